@@ -1,0 +1,3 @@
+module candent
+
+go 1.24.0

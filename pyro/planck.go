@@ -2,22 +2,54 @@ package pyro
 
 import "math"
 
+// c₂ as the unevaluated sum of two doubles: c2High + c2Low is right to 2⁻¹⁰⁵.
+const (
+	c2High float64 = C2
+	c2Low  float64 = -6.735986446804958e-19
+)
+
+// exponent returns x = c₂/(λT) as the unevaluated sum of two doubles: the product
+// λT and the quotient are carried with their rounding errors (FMA).
+func exponent(λ, t float64) (high, low float64) {
+	p := λ * t
+	pe := math.FMA(λ, t, -p)
+	high = c2High / p
+	low = (math.FMA(-high, p, c2High) - high*pe + c2Low) / p
+	return high, low
+}
+
+// wienRegion is the x beyond which the 1 in exp(x) − 1 is below 2⁻⁵⁷ of it.
+const wienRegion = 40
+
 // Radiance returns the spectral radiance of a blackbody per wavelength in vacuum,
 //
 //	L(λ,T) = c₁L λ⁻⁵ / (exp(c₂/λT) − 1)      W m⁻² sr⁻¹ m⁻¹
 //
 // M. Planck 1900. λ > 0 and T > 0; the limit 0 is returned for T = 0.
-// This is the plain form: its relative error is at most (4 + 2x)·2⁻⁵³ with
-// x = c₂/λT, and results below about 1e-308·c₁Lλ⁻⁵ flush to zero.
+// For λT from 1e-5 to 10 m K the error is at most 8 ULP wherever the result is a
+// normal float64: the exponent is compensated, and exp(−x) enters as the square
+// of exp(−x/2) so that it cannot flush to zero before the result does.
 func Radiance(λ Wavelength, t Temperature) float64 {
+	if t == 0 {
+		return 0
+	}
 	l := float64(λ)
 	l2 := l * l
-	return C1L / (l2 * l2 * l) / math.Expm1(C2/(l*float64(t)))
+	scale := C1L / (l2 * l2 * l)
+	high, low := exponent(l, float64(t))
+	if high > wienRegion {
+		half := math.Exp(-high / 2)
+		return scale * half * half * (1 - low)
+	}
+	e := math.Expm1(high)
+	return scale / (e + low*(e+1))
 }
 
 // RadianceSlope returns ∂L/∂T in W m⁻² sr⁻¹ m⁻¹ K⁻¹,
 //
 //	∂L/∂T = (L/T) · x/(1 − e⁻ˣ),   x = c₂/λT
+//
+// to the same bound as Radiance.
 func RadianceSlope(λ Wavelength, t Temperature) float64 {
 	if t == 0 {
 		return 0

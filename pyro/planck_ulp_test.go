@@ -1,0 +1,52 @@
+package pyro_test
+
+import (
+	"encoding/csv"
+	"math"
+	"os"
+	"strconv"
+	"testing"
+
+	"candent/pyro"
+)
+
+// maxULP is the bound that Radiance and RadianceSlope state.
+const maxULP = 8
+
+// TestRadianceULP compares with 50-digit values over λT from 1e-5 to 10 m K
+// (testdata/planck/radiance.csv, made by the script beside it).
+func TestRadianceULP(t *testing.T) {
+	f, err := os.Open("../testdata/planck/radiance.csv")
+	if err != nil {
+		t.Fatal(err)
+	}
+	defer f.Close()
+	r := csv.NewReader(f)
+	r.Comment = '#'
+	rows, err := r.ReadAll()
+	if err != nil {
+		t.Fatal(err)
+	}
+	if len(rows) < 300 {
+		t.Fatalf("only %d rows of check values", len(rows))
+	}
+	var worst [2]float64
+	for _, row := range rows[1:] {
+		var v [4]float64
+		for i := range v {
+			if v[i], err = strconv.ParseFloat(row[i], 64); err != nil {
+				t.Fatal(err)
+			}
+		}
+		λ, T := pyro.Wavelength(v[0]), pyro.Temperature(v[1])
+		for i, got := range []float64{pyro.Radiance(λ, T), pyro.RadianceSlope(λ, T)} {
+			want := v[2+i]
+			off := math.Abs(got-want) / (math.Nextafter(want, math.Inf(1)) - want)
+			worst[i] = math.Max(worst[i], off)
+			if !(off <= maxULP) {
+				t.Errorf("λ = %g m, T = %g K: got %.17g, want %.17g, %.1f ULP apart", v[0], v[1], got, want, off)
+			}
+		}
+	}
+	t.Logf("worst: radiance %.1f ULP, slope %.1f ULP over %d points", worst[0], worst[1], len(rows)-1)
+}

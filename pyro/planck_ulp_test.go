@@ -28,3 +28,19 @@ func TestRadianceULP(t *testing.T) {
 	}
 	t.Logf("worst: radiance %.1f ULP, slope %.1f ULP over %d points", worst[0], worst[1], len(rows))
 }
+
+// TestRadianceTemperatureULP compares with 50-digit values over the same range
+// (testdata/planck/inverse.csv, made by the script beside it).
+func TestRadianceTemperatureULP(t *testing.T) {
+	const maxULP = 4
+	worst := 0.0
+	for _, v := range readCheckValues(t, "../testdata/planck/inverse.csv", 300) {
+		got := pyro.RadianceTemperature(pyro.Wavelength(v[0]), v[1]).Kelvin()
+		off := math.Abs(got-v[2]) / (math.Nextafter(v[2], math.Inf(1)) - v[2])
+		worst = math.Max(worst, off)
+		if !(off <= maxULP) {
+			t.Errorf("λ = %g m, L = %g: got %.17g K, want %.17g K, %.1f ULP apart", v[0], v[1], got, v[2], off)
+		}
+	}
+	t.Logf("worst: %.1f ULP", worst)
+}

@@ -45,3 +45,31 @@ func TestFractionOverTheWholeRange(t *testing.T) {
 		near(t, fmt.Sprintf("F(%g m K)", v[0]), pyro.Fraction(pyro.Wavelength(v[0]), 1), v[1], fractionBound)
 	}
 }
+
+func TestFractionBetween(t *testing.T) {
+	// In-band exitance in W m⁻², 50-digit arithmetic, eleven digits printed.
+	for _, r := range []struct{ t, lo, hi, want float64 }{
+		{300, 8, 14, 172.5785587}, {500, 3, 5, 526.30403788}, {1000, 7.5, 13, 6845.6675506},
+		{1273.15, 2, 2.6, 25470.488844}, {2000, 0.7, 1.1, 84465.317641},
+	} {
+		T := pyro.Temperature(r.t)
+		got := pyro.FractionBetween(pyro.Wavelength(r.lo)*pyro.Micrometre, pyro.Wavelength(r.hi)*pyro.Micrometre, T)
+		near(t, fmt.Sprintf("M(%g to %g µm, %g K)", r.lo, r.hi, r.t), got*pyro.Exitance(T), r.want, 1e-9)
+	}
+}
+
+func TestFractionBetweenCloseWavelengths(t *testing.T) {
+	// Over a vanishing interval the fraction is πLΔλ/σT⁴; over ratios on both sides of the
+	// switch to subtraction it must join up.
+	T := 1500 * pyro.Kelvin
+	lo := 1 * pyro.Micrometre
+	hi := lo * (1 + 0x1p-40)
+	want := 3.141592653589793 * pyro.Radiance(lo, T) * float64(hi-lo) / pyro.Exitance(T)
+	near(t, "vanishing interval", pyro.FractionBetween(lo, hi, T), want, 1e-11)
+	near(t, "swapped", pyro.FractionBetween(hi, lo, T), -want, 1e-11)
+	near(t, "at the switch", pyro.FractionBetween(lo, lo*1.0999, T),
+		pyro.Fraction(lo*1.0999, T)-pyro.Fraction(lo, T), 1e-12)
+	if got := pyro.FractionBetween(lo, lo, T); got != 0 {
+		t.Errorf("empty interval: %g", got)
+	}
+}

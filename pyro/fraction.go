@@ -40,22 +40,15 @@ func FractionBetween(lo, hi Wavelength, t Temperature) float64 {
 		mid, half := float64(lo), math.Log1p(float64((hi-lo)/lo))/2
 		mid *= math.Exp(half)
 		sum := 0.0
-		for i, node := range gauss8Nodes {
-			for _, u := range [2]float64{-node, node} {
-				λ := mid * math.Exp(half*u)
-				sum += gauss8Weights[i] * Radiance(Wavelength(λ), t) * λ
-			}
+		for k := range 2 * len(gauss8Nodes) {
+			u, weight := gauss8(k)
+			λ := mid * math.Exp(half*u)
+			sum += weight * Radiance(Wavelength(λ), t) * λ
 		}
 		return math.Pi * half * sum / Exitance(t)
 	}
 	return Fraction(hi, t) - Fraction(lo, t)
 }
-
-// Nodes and weights of the eight-point Gauss–Legendre rule on [−1, 1], half of each.
-var (
-	gauss8Nodes   = [4]float64{0.183434642495649805, 0.525532409916328986, 0.79666647741362674, 0.960289856497536232}
-	gauss8Weights = [4]float64{0.362683783378361983, 0.313706645877887287, 0.222381034453374471, 0.101228536290376259}
-)
 
 const (
 	fractionNorm = 15 / (math.Pi * math.Pi * math.Pi * math.Pi)

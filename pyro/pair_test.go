@@ -1,0 +1,135 @@
+package pyro_test
+
+import (
+	"errors"
+	"fmt"
+	"math"
+	"testing"
+
+	"candent/pyro"
+)
+
+func linePair(t testing.TB, short, long float64, lo, hi pyro.Temperature) *pyro.Pair {
+	t.Helper()
+	a, err := pyro.Line(pyro.Wavelength(short) * µm)
+	if err != nil {
+		t.Fatal(err)
+	}
+	b, err := pyro.Line(pyro.Wavelength(long) * µm)
+	if err != nil {
+		t.Fatal(err)
+	}
+	p, err := pyro.NewPair(a, b, lo, hi)
+	if err != nil {
+		t.Fatal(err)
+	}
+	return p
+}
+
+func TestRatioTemperatureOfTungsten(t *testing.T) {
+	// Ratio temperatures (Planck root, grey assumed) from the emissivities of the CRC
+	// Handbook, 60th ed. (1979) p. E-381, 50-digit arithmetic, 1e-4 K printed.
+	for _, r := range []struct{ t, short, long, εShort, εLong, want float64 }{
+		{1600, 0.5, 0.7, 0.468, 0.445, 1615.847}, {1600, 1.3, 1.5, 0.322, 0.281, 1881.5988},
+		{2000, 0.7, 0.9, 0.438, 0.404, 2073.4491}, {2400, 0.8, 1.0, 0.408, 0.373, 2554.1635},
+		{2800, 0.6, 0.7, 0.434, 0.420, 2877.3325}, {2800, 1.3, 1.5, 0.325, 0.304, 3250.5906},
+	} {
+		p := linePair(t, r.short, r.long, 900, 4000)
+		T, err := p.Temperature(r.εShort/r.εLong*p.Ratio(pyro.Temperature(r.t)), 1)
+		if err != nil || math.Abs(T.Kelvin()-r.want) > 0.5e-4+1e-9 {
+			t.Errorf("%g/%g µm at %g K: %.5f K (%v), want %.4f K", r.short, r.long, r.t, T.Kelvin(), err, r.want)
+		}
+	}
+}
+
+func TestPairIsExactWithoutNoise(t *testing.T) {
+	wide, err := pyro.FlatTop(0.7*µm, 1.0*µm)
+	if err != nil {
+		t.Fatal(err)
+	}
+	overlapping, err := pyro.FlatTop(0.85*µm, 1.1*µm)
+	if err != nil {
+		t.Fatal(err)
+	}
+	colours, err := pyro.NewPair(wide, overlapping, 900, 2800)
+	if err != nil {
+		t.Fatal(err)
+	}
+	for name, p := range map[string]*pyro.Pair{"lines": linePair(t, 0.75, 0.9, 900, 2800), "overlapping": colours} {
+		if !p.Monotonic() {
+			t.Errorf("%s: not monotonic", name)
+		}
+		for T := pyro.Temperature(900); T <= 2800; T += 37.5 {
+			got, err := p.Temperature(0.985*p.Ratio(T), 0.985)
+			if err != nil {
+				t.Fatalf("%s at %v: %v", name, T, err)
+			}
+			near(t, fmt.Sprintf("%s at %v", name, T), float64(got), float64(T), 1e-12)
+		}
+	}
+}
+
+func TestPairSensitivity(t *testing.T) {
+	// 1 % of emissivity ratio, ΛT²/c₂·0.01 with Λ = λ₁λ₂/(λ₂−λ₁) (Wien), three decimals
+	// printed. At 0.7/0.9 µm, 1000 K Wien's law is right to 1e-7.
+	p := linePair(t, 0.7, 0.9, 900, 2800)
+	if got := p.Uncertainty(1000, 0, 0.01); math.Abs(got-2.189) > 0.5e-3 {
+		t.Errorf("1 %% of emissivity ratio at 1000 K is worth %.4f K, want 2.189", got)
+	}
+	near(t, "Λ", p.EffectiveWavelength(1000).Micrometres(), 3.15, 1e-5)
+}
+
+func TestUnreachableRatiosSayWhy(t *testing.T) {
+	p := linePair(t, 0.75, 0.9, 900, 2800)
+	if _, err := p.Temperature(1e-6, 1); !errors.Is(err, pyro.ErrRatioLow) {
+		t.Errorf("tiny ratio: %v", err)
+	}
+	if _, err := p.Temperature(1.5, 1); !errors.Is(err, pyro.ErrRatioHigh) {
+		t.Errorf("ratio of 4000 K or so: %v", err)
+	}
+	if _, err := p.Temperature(50, 1); !errors.Is(err, pyro.ErrRatioHigh) {
+		t.Errorf("ratio beyond Rayleigh–Jeans: %v", err)
+	}
+	for _, bad := range []float64{0, -1, math.NaN(), math.Inf(1)} {
+		if _, err := p.Temperature(bad, 1); !errors.Is(err, pyro.ErrPair) {
+			t.Errorf("ratio %g: %v", bad, err)
+		}
+	}
+	a, _ := pyro.Line(0.9 * µm)
+	b, _ := pyro.Line(0.75 * µm)
+	if _, err := pyro.NewPair(a, b, 900, 2800); !errors.Is(err, pyro.ErrPair) {
+		t.Errorf("swapped bands: %v", err)
+	}
+}
+
+func TestRatioWithTwoTemperaturesGivesBoth(t *testing.T) {
+	// A wide band whose light shifts past a line: two blocks of responsivity around a
+	// line make the ratio turn round.
+	ring, err := pyro.Tabulated(
+		[]pyro.Wavelength{0.5 * µm, 0.501 * µm, 0.551 * µm, 0.552 * µm, 3.0 * µm, 3.001 * µm, 3.05 * µm, 3.051 * µm},
+		[]float64{0, 1, 1, 0, 0, 0.05, 0.05, 0}, pyro.PerWatt)
+	if err != nil {
+		t.Fatal(err)
+	}
+	line, err := pyro.Line(1.6 * µm)
+	if err != nil {
+		t.Fatal(err)
+	}
+	if ring.Mean() >= line.Mean() {
+		t.Fatal("the example needs the ring's mean below the line")
+	}
+	p, err := pyro.NewPair(ring, line, 500, 5500)
+	if err != nil {
+		t.Fatal(err)
+	}
+	if p.Monotonic() {
+		t.Fatal("the example needs a ratio that turns round")
+	}
+	_, err = p.Temperature(p.Ratio(4500), 1)
+	var two *pyro.AmbiguousRatio
+	if !errors.As(err, &two) || len(two.Temperatures) != 2 {
+		t.Fatalf("error %v", err)
+	}
+	near(t, "one of the two", float64(two.Temperatures[1]), 4500, 1e-12)
+	near(t, "the other has the same ratio", p.Ratio(two.Temperatures[0]), p.Ratio(4500), 1e-12)
+}

@@ -133,3 +133,29 @@ func TestRatioWithTwoTemperaturesGivesBoth(t *testing.T) {
 	near(t, "one of the two", float64(two.Temperatures[1]), 4500, 1e-12)
 	near(t, "the other has the same ratio", p.Ratio(two.Temperatures[0]), p.Ratio(4500), 1e-12)
 }
+
+func ExamplePair_Temperature() {
+	short, err := pyro.FlatTop(700*pyro.Nanometre, 800*pyro.Nanometre)
+	if err != nil {
+		fmt.Println(err)
+	}
+	long, err := pyro.FlatTop(850*pyro.Nanometre, 950*pyro.Nanometre)
+	if err != nil {
+		fmt.Println(err)
+	}
+	pair, err := pyro.NewPair(short, long, 1000*pyro.Kelvin, 2800*pyro.Kelvin)
+	if err != nil {
+		fmt.Println(err)
+	}
+	t, err := pair.Temperature(0.1620, 0.985) // reading ratio, emissivity ratio
+	if err != nil {
+		fmt.Println(err)
+	}
+	u := pair.Uncertainty(t, 0.002, 0.010) // relative standard uncertainties of the two
+	fmt.Printf("%.1f, standard uncertainty %.1f K if the emissivity ratio is 0.985 ± 0.010\n", t, u)
+	_, err = pair.Temperature(9, 0.985)
+	fmt.Println(err)
+	// Output:
+	// 1156.5 K, standard uncertainty 4.5 K if the emissivity ratio is 0.985 ± 0.010
+	// pyro: ratio above the pair's range: ratio 9 over emissivity ratio 0.985 lies above 0.7918, the most between 1000 K and 2800 K: it is above the Rayleigh–Jeans limit 2.074 of these wavelengths, which no temperature reaches: the long channel is saturated, or the channels are swapped
+}

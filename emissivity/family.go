@@ -26,10 +26,13 @@ const (
 
 // Family is a curve of few parameters, ε(λ) = link(Σ θₖφₖ(λ)). The zero value is Grey.
 type Family struct {
-	kind   kind
-	order  int
-	centre pyro.Wavelength
-	err    error
+	kind     kind
+	order    int
+	centre   pyro.Wavelength
+	relative bool
+	priors   [MaxOrder + 1]Prior
+	known    []Known
+	err      error
 }
 
 type kind int

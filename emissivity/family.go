@@ -114,16 +114,22 @@ func (f Family) Parameters() []string {
 	return []string{"level"}
 }
 
+// Coordinate returns d, whose powers are the basis φₖ: (λ − λc)/µm, or ln(λ/λc) for the
+// power law. The family must be centred.
+func (f Family) Coordinate(λ pyro.Wavelength) float64 {
+	if f.kind == powerLaw {
+		return math.Log(float64(λ / f.centre))
+	}
+	return (λ - f.centre).Micrometres()
+}
+
 // Basis writes φₖ(λ), one for each parameter, to dst and returns it. The family must
 // be centred; dst must be as long as Parameters, or Basis panics.
 func (f Family) Basis(dst []float64, λ pyro.Wavelength) []float64 {
 	if len(dst) != f.order+1 {
 		panic("emissivity: Basis: dst and parameters differ in length")
 	}
-	d := (λ - f.centre).Micrometres()
-	if f.kind == powerLaw {
-		d = math.Log(float64(λ / f.centre))
-	}
+	d := f.Coordinate(λ)
 	v := 1.0
 	for k := range dst {
 		dst[k] = v

@@ -273,3 +273,13 @@ func (b *Band) Check(t Temperature) error {
 	}
 	return nil
 }
+
+// Nodes returns the band's quadrature: wavelengths, rising, and weights of a mean that
+// sum to 1, so that ∫R·f dλ/∫R dλ = Σ wₖ f(λₖ) for smooth f. The slices are copies.
+func (b *Band) Nodes() (λ []Wavelength, weights []float64) {
+	λ = make([]Wavelength, len(b.nodes))
+	for i, v := range b.nodes {
+		λ[i] = Wavelength(v)
+	}
+	return λ, append([]float64(nil), b.weights...)
+}

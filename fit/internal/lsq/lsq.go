@@ -242,6 +242,16 @@ func (s *Solver) solve(damping float64) (predicted, length float64) {
 	return predicted, math.Sqrt(length)
 }
 
+// SetJacobian takes in a Jacobian, row by row, for Covariance without a minimum.
+func (s *Solver) SetJacobian(rows [][]float64) {
+	for i, row := range rows {
+		copy(s.jac[i*s.p:(i+1)*s.p], row)
+	}
+	clear(s.r)
+	clear(s.widest)
+	s.factor()
+}
+
 // RankTolerance is the ratio of singular values of the scaled Jacobian below which a
 // direction counts as not fixed.
 const RankTolerance = 1e-12

@@ -1,0 +1,199 @@
+package fit
+
+import (
+	"fmt"
+	"math"
+
+	"gonum.org/v1/gonum/stat/distuv"
+
+	"candent/pyro"
+)
+
+// DiagnoseTo is the step after EstimateTo and IntervalTo for the same reading: the budget
+// of u(T), and what the residuals say against the assumptions.
+func (e *Estimator) DiagnoseTo(dst *Result, w *Work, r Readings) error {
+	if err := w.load(r); err != nil {
+		return err
+	}
+	dst.notes = dst.notes[:0]
+	if e.deficient != "" {
+		dst.note("%s", e.deficient)
+	}
+	if !dst.fitted {
+		return nil
+	}
+	if dst.hasCov {
+		dst.fillShares(w)
+	}
+	if dst.basins[0].atBound {
+		dst.note("a bound of the emissivity is active: the interval is right, a standard uncertainty would not be")
+	}
+	if n := dst.inside(); n > 1 {
+		dst.note("%d temperatures explain the readings; the one with the least χ² need not be the true one", n)
+	}
+	if dst.basins[0].atEnd {
+		dst.note("χ² is least at an end of the temperature range")
+	}
+	if dst.dof == 0 {
+		dst.note("as many parameters as readings: nothing is left to test the %v by", e.family)
+	}
+	dst.noteLackOfFit()
+	dst.noteStructure()
+	return nil
+}
+
+func (r *Result) note(format string, args ...any) {
+	r.notes = append(r.notes, fmt.Sprintf(format, args...))
+}
+
+// fillShares splits u²(T) by input: with c the first column of the covariance in units of
+// independent data, each datum gives (c·J)².
+func (r *Result) fillShares(w *Work) {
+	e := r.e
+	size := e.size()
+	w.evaluate(r.beta, r.psi, true)
+	c := r.cov[:size] // symmetric: row 0 is column 0; a common factor cancels in Budget
+	clear(r.share)
+	for j := range e.n {
+		v := 0.0
+		for a, f := range w.jac[j*size : (j+1)*size] {
+			v += c[a] * f
+		}
+		if e.whiten == nil {
+			v /= r.sigma[j]
+		}
+		r.share[0] += v * v
+	}
+	if t := e.assume.Temperature; t.StdK > 0 {
+		v := c[0] / (r.beta * r.beta * t.StdK)
+		r.share[1] = v * v
+	}
+	for i, d := range e.data {
+		v := 0.0
+		for k, f := range d.row {
+			v += c[1+k] * f * d.weight
+		}
+		r.share[2+i] = v * v
+	}
+	for k := range e.q {
+		v := c[1+e.p+k]
+		r.share[2+len(e.data)+k] = v * v
+	}
+}
+
+// lackOfFit is the probability of a larger χ² below which a family counts as contradicted.
+const lackOfFit = 0.001
+
+func (r *Result) noteLackOfFit() {
+	if r.dof < 1 || r.e.assume.Noise.unknown || r.e.assume.Loss.kind != square {
+		return
+	}
+	p := distuv.ChiSquared{K: float64(r.dof)}.Survival(r.chi2)
+	if p < lackOfFit {
+		r.note("the readings contradict the assumptions (%v, %v): χ² = %.3g on %d degrees of freedom; the interval holds only if they are right", r.e.family, r.e.assume.Noise, r.chi2, r.dof)
+	}
+}
+
+// noteStructure looks for runs of one sign, for single channels far above the fit, and
+// for a fringe, in the residuals in units of their σ.
+func (r *Result) noteStructure() {
+	e := r.e
+	if e.n < 12 || e.whiten != nil || r.dof < 1 {
+		return
+	}
+	scale := math.Sqrt(r.chi2 / float64(r.dof)) // residuals are judged against their own size
+	if !(scale > 0) {
+		return
+	}
+	z := make([]float64, e.n)
+	λ := make([]float64, e.n)
+	for j, i := range e.used {
+		z[j] = (r.signal[j] - r.model[j]) / r.sigma[j]
+		λ[j] = float64(e.bands[i].Mean())
+	}
+	r.noteRuns(z)
+	r.notePeaks(z, λ)
+	r.noteFringe(z, λ)
+}
+
+// noteRuns counts runs of one sign along the channels (A. Wald, J. Wolfowitz, On a test
+// whether two samples are from the same population, Ann. Math. Stat. 11 (1940) 147).
+func (r *Result) noteRuns(z []float64) {
+	up, runs := 0.0, 1.0
+	for j, v := range z {
+		if v > 0 {
+			up++
+		}
+		if j > 0 && (v > 0) != (z[j-1] > 0) {
+			runs++
+		}
+	}
+	n := float64(len(z))
+	down := n - up
+	mean := 1 + 2*up*down/n
+	variance := (mean - 1) * (mean - 2) / (n - 1)
+	if variance > 0 && (runs-mean)/math.Sqrt(variance) < -3.3 {
+		r.note("the residuals keep their sign over long stretches of wavelength: the surface does not follow the %v", r.e.family)
+	}
+}
+
+// notePeaks names single channels far above the fit: an emission line.
+func (r *Result) notePeaks(z, λ []float64) {
+	limit := distuv.UnitNormal.Quantile(1 - 0.0005/float64(len(z)))
+	for j, v := range z {
+		before, after := 0.0, 0.0
+		if j > 0 {
+			before = z[j-1]
+		}
+		if j+1 < len(z) {
+			after = z[j+1]
+		}
+		if v < limit || v < 2*math.Max(before, after) {
+			continue
+		}
+		name := ""
+		for _, masks := range [][]Mask{Sodium, Lithium, Potassium, Rubidium} {
+			for _, m := range masks {
+				if λ[j] >= float64(m.Lo) && λ[j] <= float64(m.Hi) {
+					name = ", where " + m.Name + " emits"
+				}
+			}
+		}
+		r.note("channel %d (%v) lies %.1f σ above the fit%s: an emission line? Mask it", r.e.used[j], pyro.Wavelength(λ[j]), v, name)
+	}
+}
+
+// noteFringe looks for a residual periodic in 1/λ by the classical periodogram
+// (A. Schuster 1898); under no fringe the normalised power of one frequency is
+// exponentially distributed with mean 1.
+func (r *Result) noteFringe(z, λ []float64) {
+	n := len(z)
+	lo, hi := math.Inf(1), 0.0
+	for _, l := range λ {
+		lo, hi = math.Min(lo, 1/l), math.Max(hi, 1/l)
+	}
+	variance := 0.0
+	for _, v := range z {
+		variance += v * v / float64(n)
+	}
+	if !(hi > lo) || variance == 0 {
+		return
+	}
+	best, at := 0.0, 0
+	trials := n/2 - 2
+	for k := 3; k < 3+trials; k++ { // fewer than three periods may be the family's curvature
+		c, s := 0.0, 0.0
+		for j, v := range z {
+			φ := 2 * math.Pi * float64(k) * (1/λ[j] - lo) / (hi - lo)
+			c += v * math.Cos(φ)
+			s += v * math.Sin(φ)
+		}
+		if p := (c*c + s*s) / (float64(n) * variance); p > best {
+			best, at = p, k
+		}
+	}
+	if float64(max(trials, 1))*math.Exp(-best) < 0.0005 {
+		// 2·n·d·Δ(1/λ) = 1 for a film of optical thickness n·d
+		r.note("the residuals show a fringe of %d periods over the spectrum: a film of optical thickness %.2g µm, or an etalon in the path", at, float64(at)/(2*(hi-lo))*1e6)
+	}
+}

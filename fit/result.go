@@ -1,0 +1,258 @@
+package fit
+
+import (
+	"math"
+
+	"candent/pyro"
+)
+
+// State says what a number rests on.
+type State int
+
+const (
+	// Undetermined: the interval is open on both sides.
+	Undetermined State = iota
+	// Bounded: the interval is closed on one side only.
+	Bounded
+	// Determined: the interval at the stated probability closes on both sides inside the
+	// temperature range.
+	Determined
+)
+
+func (s State) String() string { return [...]string{"undetermined", "bounded", "determined"}[s] }
+
+// Result is what one reading tells. Its accessors return a state or an ok beside each
+// number; a number whose state says that there is none is 0 and means nothing.
+type Result struct {
+	e *Estimator
+
+	basins []basin
+	beta   float64
+	chi2   float64
+	dof    int
+	psi    []float64
+	cov    []float64 // of (β, ψ)
+	hasCov bool
+	fitted bool
+
+	signal, model, sigma []float64 // channels used
+	black, eps           []float64
+
+	hasInterval bool
+	probability float64
+	limit       float64
+	hot, cold   end // in β: the hot end is the smaller
+
+	share []float64 // of u²(T): readings, temperature prior, data, shared inputs
+	notes []string
+}
+
+// NewResult returns a result for the estimator to write to.
+func (e *Estimator) NewResult() *Result {
+	f := func(n int) []float64 { return make([]float64, n) }
+	size := e.size()
+	return &Result{e: e, basins: make([]basin, 0, maxBasins), psi: f(e.p + e.q), cov: f(size * size),
+		signal: f(e.n), model: f(e.n), sigma: f(e.n), black: f(e.n), eps: f(e.n), share: f(2 + len(e.data) + e.q)}
+}
+
+func (r *Result) reset(e *Estimator) {
+	r.e = e
+	r.basins, r.notes = r.basins[:0], r.notes[:0]
+	r.hasCov, r.fitted, r.hasInterval = false, false, false
+	r.hot, r.cold = end{}, end{}
+	r.limit = math.Inf(-1)
+	clear(r.share)
+	free := e.p
+	for _, fixed := range e.fixed {
+		if fixed {
+			free--
+		}
+	}
+	r.dof = e.n + len(e.data) - free
+	if t := e.assume.Temperature; t.Value == 0 {
+		r.dof--
+	}
+}
+
+// inside returns how many basins lie inside the interval's Δχ²; the lowest comes first.
+func (r *Result) inside() int {
+	n := 0
+	for _, b := range r.basins {
+		if b.chi2 <= r.limit || n == 0 {
+			n++
+		}
+	}
+	return n
+}
+
+// State returns how far the temperature is determined. Before IntervalTo it is provisional:
+// Determined where there is one basin with a covariance.
+func (r *Result) State() State {
+	if !r.hasInterval {
+		if r.hasCov && len(r.basins) == 1 {
+			return Determined
+		}
+		return Undetermined
+	}
+	s := Undetermined
+	if !r.hot.open {
+		s++
+	}
+	if !r.cold.open {
+		s++
+	}
+	return s
+}
+
+// Temperature returns the temperature of the lowest basin where the state is Determined.
+// In any other state there is none, and the interval says what is known.
+func (r *Result) Temperature() (pyro.Temperature, State) {
+	s := r.State()
+	if s != Determined {
+		return 0, s
+	}
+	return pyro.Temperature(1 / r.basins[0].beta), s
+}
+
+// Uncertainty returns the standard uncertainty of the temperature in K. There is none
+// (ok false) where the state is not Determined, where several basins lie inside the
+// interval, or where a bound of the emissivity is active: there the interval speaks.
+func (r *Result) Uncertainty() (stdK float64, ok bool) {
+	if r.State() != Determined || !r.hasCov || r.inside() != 1 {
+		return 0, false
+	}
+	return math.Sqrt(r.cov[0]) / (r.beta * r.beta), true
+}
+
+// Interval is a profile interval of the temperature. An open end is where the searched
+// range, not the readings, ended it.
+type Interval struct {
+	Probability       float64
+	Low, High         pyro.Temperature
+	LowOpen, HighOpen bool
+}
+
+// Interval returns the interval that IntervalTo found; ok is false before that.
+func (r *Result) Interval() (Interval, bool) {
+	if !r.hasInterval {
+		return Interval{}, false
+	}
+	return Interval{r.probability, pyro.Temperature(1 / r.cold.beta), pyro.Temperature(1 / r.hot.beta), r.cold.open, r.hot.open}, true
+}
+
+// Basins returns the temperatures of the minima of χ² that lie inside the interval, the
+// lowest χ² first.
+func (r *Result) Basins() []pyro.Temperature {
+	var t []pyro.Temperature
+	if len(r.basins) == 0 {
+		return t
+	}
+	for _, b := range r.basins[:r.inside()] {
+		t = append(t, pyro.Temperature(1/b.beta))
+	}
+	return t
+}
+
+// Relative reports whether the curve is an amplitude, not an emissivity.
+func (r *Result) Relative() bool { return r.e.family.IsRelative() }
+
+// Emissivity returns the fitted emissivity (the amplitude, where the level is relative)
+// in band i, and its standard uncertainty. ok is false where the state is not Determined,
+// or the band is masked; std is 0 with hasStd false where there is no covariance.
+func (r *Result) Emissivity(i int) (value, std float64, hasStd, ok bool) {
+	if r.State() != Determined || !r.fitted {
+		return 0, 0, false, false
+	}
+	e := r.e
+	for j, band := range e.used {
+		if band != i {
+			continue
+		}
+		value = r.eps[j]
+		if !r.hasCov || r.inside() != 1 {
+			return value, 0, false, true
+		}
+		// The curve at the band's mean wavelength stands for the band.
+		var grad [8]float64
+		φ := 1.0
+		slope := 1.0
+		if e.lower != 0 {
+			slope = value
+		}
+		for k := range e.p {
+			grad[k] = slope * φ
+			φ *= e.coord[j]
+		}
+		sum, size := 0.0, e.size()
+		for a := range e.p {
+			for b := range e.p {
+				sum += grad[a] * grad[b] * r.cov[(1+a)*size+1+b]
+			}
+		}
+		return value, math.Sqrt(max(sum, 0)), true, true
+	}
+	return 0, 0, false, false
+}
+
+// Parameter returns the value and the standard uncertainty of a parameter of the family
+// by its name; ok is false where it is not determined. A fixed parameter has std 0.
+func (r *Result) Parameter(name string) (value, std float64, ok bool) {
+	if r.State() != Determined || !r.fitted {
+		return 0, 0, false
+	}
+	size := r.e.size()
+	for k, n := range r.e.family.Parameters() {
+		if n == name {
+			if !r.hasCov && !r.e.fixed[k] {
+				return 0, 0, false
+			}
+			return r.psi[k], math.Sqrt(max(r.cov[(1+k)*size+1+k], 0)), true
+		}
+	}
+	return 0, 0, false
+}
+
+// ChiSquared returns the minimum of χ² and its degrees of freedom.
+func (r *Result) ChiSquared() (chi2 float64, degreesOfFreedom int) { return r.chi2, r.dof }
+
+// Undetermined says in words what the readings can't tell, or "".
+func (r *Result) Undetermined() string { return r.e.deficient }
+
+// Notes returns what the user should know beside the numbers.
+func (r *Result) Notes() []string { return append([]string(nil), r.notes...) }
+
+// Share is one input's part of the standard uncertainty of the temperature.
+type Share struct {
+	Name string
+	StdK float64
+}
+
+// Budget returns each input's part of the linearised u(T); their squares add up to it.
+// It is nil where Uncertainty has none.
+func (r *Result) Budget() []Share {
+	u, ok := r.Uncertainty()
+	if !ok {
+		return nil
+	}
+	total := 0.0
+	for _, v := range r.share {
+		total += v
+	}
+	if total == 0 {
+		return nil
+	}
+	names := []string{"readings", "temperature known beforehand"}
+	for _, d := range r.e.data {
+		names = append(names, d.name)
+	}
+	for _, s := range r.e.assume.Shared {
+		names = append(names, s.Name)
+	}
+	var list []Share
+	for i, v := range r.share {
+		if v > 0 {
+			list = append(list, Share{names[i], u * math.Sqrt(v/total)})
+		}
+	}
+	return list
+}

@@ -22,6 +22,7 @@ func (e *Estimator) DiagnoseTo(dst *Result, w *Work, r Readings) error {
 	if !dst.fitted {
 		return nil
 	}
+	dst.describe(w)
 	if dst.hasCov {
 		dst.fillShares(w)
 	}
@@ -46,12 +47,25 @@ func (r *Result) note(format string, args ...any) {
 	r.notes = append(r.notes, fmt.Sprintf(format, args...))
 }
 
+// describe fills the model and the σ of the channels at the estimate.
+func (r *Result) describe(w *Work) {
+	e := r.e
+	w.evaluate(r.beta, r.psi, true)
+	copy(r.model, w.model)
+	for j, m := range r.model {
+		if e.whiten == nil {
+			r.sigma[j] = math.Hypot(w.std[j], w.rel*m)
+		} else {
+			r.sigma[j] = math.Sqrt(e.assume.Noise.cov[e.used[j]*(len(e.bands)+1)])
+		}
+	}
+}
+
 // fillShares splits u²(T) by input: with c the first column of the covariance in units of
 // independent data, each datum gives (c·J)².
 func (r *Result) fillShares(w *Work) {
 	e := r.e
 	size := e.size()
-	w.evaluate(r.beta, r.psi, true)
 	c := r.cov[:size] // symmetric: row 0 is column 0; a common factor cancels in Budget
 	clear(r.share)
 	for j := range e.n {

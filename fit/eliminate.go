@@ -32,7 +32,7 @@ func (w *Work) eliminate(β float64, ψ []float64) (chi2, slope float64) {
 			}
 			gain += w.step[a] * (2*w.grad[1+a] - v)
 		}
-		if gain <= 1e-14*(1+chi2) && w.settled(ψ, n) {
+		if gain <= 1e-18*(1+chi2) && w.settled(ψ, n) {
 			break
 		}
 		before := chi2
@@ -307,11 +307,15 @@ func (w *Work) startTheta(β float64, ψ []float64) {
 	size := e.size()
 	clear(w.hess)
 	clear(w.grad)
+	if !w.haveLog {
+		logTo(w.log, w.signal)
+		w.haveLog = true
+	}
 	for j, y := range w.log {
-		if math.IsInf(y, -1) || !(w.black[j] > 0) {
+		s := w.signal[j]
+		if !(s > 0) || !(w.black[j] > 0) {
 			continue
 		}
-		s := w.signal[j]
 		variance := w.std[j]*w.std[j] + w.rel*w.rel*s*s
 		if e.whiten != nil {
 			variance = e.assume.Noise.cov[e.used[j]*(len(e.bands)+1)]

@@ -53,6 +53,11 @@ func (e *Estimator) EstimateTo(dst *Result, w *Work, r Readings) error {
 		}
 		return nil
 	}
+	var fast bool
+	if dst.basins, fast = w.fastBasins(dst.basins); fast {
+		dst.fromFast(w)
+		return nil
+	}
 	dst.basins = w.findBasins(dst.basins)
 	if len(dst.basins) == 0 {
 		return fmt.Errorf("%w: χ² has no finite value between %v and %v: are the signals in W m⁻² sr⁻¹ m⁻¹?", ErrRange, e.assume.Range.Min, e.assume.Range.Max)
@@ -74,18 +79,6 @@ func (dst *Result) covariance(w *Work, β float64, from int) {
 	size := e.size()
 	dst.beta = β
 	dst.chi2 = w.evaluate(β, dst.psi, true)
-	for j, s := range w.black {
-		dst.black[j] = s
-	}
-	copy(dst.eps, w.eps)
-	copy(dst.model, w.model)
-	for j := range dst.sigma {
-		if e.whiten == nil {
-			dst.sigma[j] = math.Sqrt(w.std[j]*w.std[j] + w.rel*w.rel*w.model[j]*w.model[j])
-		} else {
-			dst.sigma[j] = math.Sqrt(e.assume.Noise.cov[e.used[j]*(len(e.bands)+1)])
-		}
-	}
 	dst.fitted = true
 	if dst.basins[0].atBound || !w.factor(from, size) {
 		return
@@ -109,6 +102,42 @@ func (dst *Result) covariance(w *Work, β float64, from int) {
 		w.backSolve(x, size)
 		for b := range n {
 			dst.cov[(from+a)*size+from+b] = scale * x[b]
+		}
+	}
+	dst.hasCov = true
+}
+
+// rescan asks the scan for all basins, far ones too, and keeps the lowest as it is.
+func (e *Estimator) rescan(dst *Result, w *Work) error {
+	lowest := dst.basins[0]
+	found := w.findBasins(dst.basins)
+	if len(found) == 0 || math.Abs(found[0].beta-lowest.beta) > 1e-6*lowest.beta {
+		return fmt.Errorf("%w: the scan and the fast path disagree on the lowest minimum", ErrRange)
+	}
+	dst.basins = found
+	dst.basins[0] = lowest
+	return nil
+}
+
+// fromFast takes the lowest basin and its covariance over from the fast path.
+func (dst *Result) fromFast(w *Work) {
+	e := w.e
+	size := e.size()
+	b := &dst.basins[0]
+	dst.beta, dst.chi2, dst.fitted = b.beta, b.chi2, true
+	copy(dst.psi, b.theta[:e.p])
+	scale := 1.0
+	if e.assume.Noise.unknown {
+		if dst.dof <= 0 {
+			return
+		}
+		scale = dst.chi2 / float64(dst.dof)
+	}
+	c := b.cov
+	full := [9]float64{c[0], c[1], c[2], c[1], c[3], c[4], c[2], c[4], c[5]}
+	for a := range size {
+		for b := range size {
+			dst.cov[a*size+b] = scale * full[3*a+b]
 		}
 	}
 	dst.hasCov = true
@@ -151,6 +180,11 @@ func (e *Estimator) IntervalTo(dst *Result, w *Work, r Readings, p float64) erro
 		dst.hot, dst.cold = end{e.hottest, true}, end{e.coldest, true}
 		dst.hasInterval = true
 		return nil
+	}
+	if q*q*scale > fastLimit*max(1, scale) && len(dst.basins) > 0 && dst.basins[0].fast {
+		if err := e.rescan(dst, w); err != nil {
+			return err
+		}
 	}
 	limit := dst.chi2 + q*q*scale
 	dst.limit = limit

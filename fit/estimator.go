@@ -25,6 +25,7 @@ type Estimator struct {
 	rate    []float64 // c₂/λ, K
 	coord   []float64 // the family's coordinate d at each channel (lines)
 	table   *bandTable
+	fast    *fastPlan // nil where the assumptions are not plain
 
 	limits   []float64 // rows φ of the linear form where its bounds are held, each p long
 	lower    float64   // bounds of Σ θₖφₖ; infinite where there is none
@@ -86,6 +87,7 @@ func New(bands []*pyro.Band, a Assume) (*Estimator, error) {
 	e.compileBands()
 	e.compileLimits()
 	e.deficient = e.findDeficiency()
+	e.fast = e.compileFast()
 	return e, nil
 }
 

@@ -35,8 +35,7 @@ type Result struct {
 	hasCov bool
 	fitted bool
 
-	signal, model, sigma []float64 // channels used
-	black, eps           []float64
+	signal, model, sigma []float64 // channels used; the latter two after DiagnoseTo
 
 	hasInterval bool
 	probability float64
@@ -52,7 +51,7 @@ func (e *Estimator) NewResult() *Result {
 	f := func(n int) []float64 { return make([]float64, n) }
 	size := e.size()
 	return &Result{e: e, basins: make([]basin, 0, maxBasins), psi: f(e.p + e.q), cov: f(size * size),
-		signal: f(e.n), model: f(e.n), sigma: f(e.n), black: f(e.n), eps: f(e.n), share: f(2 + len(e.data) + e.q)}
+		signal: f(e.n), model: f(e.n), sigma: f(e.n), share: f(2 + len(e.data) + e.q)}
 }
 
 func (r *Result) reset(e *Estimator) {
@@ -157,7 +156,7 @@ func (r *Result) Basins() []pyro.Temperature {
 func (r *Result) Relative() bool { return r.e.family.IsRelative() }
 
 // Emissivity returns the fitted emissivity (the amplitude, where the level is relative)
-// in band i, and its standard uncertainty. ok is false where the state is not Determined,
+// at the mean wavelength of band i, and its standard uncertainty. ok is false where the state is not Determined,
 // or the band is masked; std is 0 with hasStd false where there is no covariance.
 func (r *Result) Emissivity(i int) (value, std float64, hasStd, ok bool) {
 	if r.State() != Determined || !r.fitted {
@@ -168,11 +167,10 @@ func (r *Result) Emissivity(i int) (value, std float64, hasStd, ok bool) {
 		if band != i {
 			continue
 		}
-		value = r.eps[j]
+		value, _ = e.curve(r.psi[:e.p], e.coord[j])
 		if !r.hasCov || r.inside() != 1 {
 			return value, 0, false, true
 		}
-		// The curve at the band's mean wavelength stands for the band.
 		var grad [8]float64
 		φ := 1.0
 		slope := 1.0

@@ -10,6 +10,9 @@ type basin struct {
 	beta, chi2 float64
 	atEnd      bool // the range cuts it off
 	atBound    bool // a bound of the emissivity is active in it
+	fast       bool // found by the fast path, with θ and the covariance of (β, θ)
+	theta      [2]float64
+	cov        [6]float64
 }
 
 // maxBasins is how many basins a result keeps; the lowest are kept.
@@ -25,11 +28,19 @@ func (w *Work) scan() {
 		if i == gridSteps {
 			β = e.coldest
 		}
-		w.startTheta(β, ψ)
-		chi2, slope := w.eliminate(β, ψ)
-		w.grid[i] = gridPoint{β, chi2, slope}
+		w.grid[i] = w.gridPoint(β, ψ)
 	}
 }
+
+func (w *Work) gridPoint(β float64, ψ []float64) gridPoint {
+	w.startTheta(β, ψ)
+	chi2, slope := w.eliminate(β, ψ)
+	return gridPoint{β, chi2, slope}
+}
+
+// closer is into how many parts grid steps beside a minimum are cut, since two minima
+// may hide in one step.
+const closer = 4
 
 // findBasins scans the range and refines every minimum.
 func (w *Work) findBasins(dst []basin) []basin {
@@ -44,17 +55,40 @@ func (w *Work) findBasins(dst []basin) []basin {
 		case i == 0 && g.slope > 0 && w.grid[1].chi2 >= g.chi2,
 			i == last && g.slope < 0 && w.grid[last-1].chi2 >= g.chi2:
 			dst = insertBasin(dst, basin{beta: g.beta, chi2: g.chi2, atEnd: true})
-		case i < last && g.slope < 0 && w.grid[i+1].slope > 0:
-			dst = insertBasin(dst, w.refine(g, w.grid[i+1]))
+		case i < last && w.beside(i):
+			next := w.grid[i+1]
+			ψ := w.psi[:w.e.p+w.e.q]
+			from := g
+			for k := 1; k <= closer; k++ {
+				to := next
+				if k < closer {
+					to = w.gridPoint(g.beta+(next.beta-g.beta)*float64(k)/closer, ψ)
+				}
+				if from.slope < 0 && to.slope > 0 {
+					dst = insertBasin(dst, w.refine(from, to))
+				}
+				from = to
+			}
 		}
 	}
 	return dst
 }
 
+// beside reports whether the step after grid point i holds a change of the slope's sign,
+// or is next to one that does.
+func (w *Work) beside(i int) bool {
+	for k := max(i-1, 0); k <= min(i+1, len(w.grid)-2); k++ {
+		if w.grid[k].slope < 0 && w.grid[k+1].slope > 0 {
+			return true
+		}
+	}
+	return false
+}
+
 func insertBasin(list []basin, b basin) []basin {
 	at := len(list)
 	for i, o := range list {
-		if math.Abs(o.beta-b.beta) <= 1e-9*b.beta {
+		if math.Abs(o.beta-b.beta) <= 1e-7*b.beta {
 			return list
 		}
 		if b.chi2 < o.chi2 && at == len(list) {
@@ -85,7 +119,7 @@ func (w *Work) refine(a, b gridPoint) basin {
 		}
 		w.startTheta(β, ψ)
 		_, slope := w.eliminate(β, ψ)
-		if math.Abs(slope) == 0 || hi-lo <= 1e-6*β {
+		if slope == 0 || hi-lo <= 1e-6*β && w.polishes(&β, ψ) || hi-lo <= 1e-14*β {
 			lo = β
 			break
 		}
@@ -103,65 +137,39 @@ func (w *Work) refine(a, b gridPoint) basin {
 			side = 1
 		}
 	}
-	return w.polish(lo, ψ)
+	chi2 := w.at(lo)
+	return basin{beta: lo, chi2: chi2, atBound: len(w.active) > 0}
 }
 
-// polish takes the minimum at 1/T ≈ β to the last digits by steps in all unknowns at
-// once. Where a bound of the emissivity is active it stays on the curve.
-func (w *Work) polish(β float64, ψ []float64) basin {
-	w.startTheta(β, ψ)
-	chi2, _ := w.eliminate(β, ψ)
+// polishes takes β to the minimum's last digits by Gauss–Newton steps in all unknowns at
+// once. It reports false where they don't contract, or a bound of the emissivity is active.
+func (w *Work) polishes(β *float64, ψ []float64) bool {
 	if len(w.active) > 0 {
-		return w.polishOnCurve(β, chi2, ψ)
+		return false
 	}
-	e := w.e
-	size := e.size()
-	before := math.Inf(1)
-	for range 50 {
-		chi2 = w.evaluate(β, ψ, false)
+	size := w.e.size()
+	x, before := *β, math.Inf(1)
+	for range 30 {
+		w.evaluate(x, ψ, false)
 		if !w.factor(0, size) {
-			break
+			return false
 		}
 		step := w.step[:size]
 		copy(step, w.grad)
 		w.backSolve(step, size)
-		length := math.Abs(step[0]) / β
-		if !(length < 1e-3) || length >= before && length < 1e-9 {
-			break
+		length := math.Abs(step[0]) / x
+		if !(length < 1e-5) || length > 0.5*before && length > 1e-14 {
+			return false
 		}
-		β += step[0]
+		x += step[0]
 		for k := range ψ {
 			ψ[k] += step[1+k]
 		}
-		if length <= 1e-15 {
-			break
+		if length <= 1e-14 {
+			*β = x
+			return true
 		}
 		before = length
 	}
-	chi2 = w.evaluate(β, ψ, false)
-	return basin{beta: β, chi2: chi2}
-}
-
-// polishOnCurve narrows a minimum with an active bound by secant steps on the slope.
-func (w *Work) polishOnCurve(β, chi2 float64, ψ []float64) basin {
-	h := 1e-5 * β
-	at := func(β float64) (float64, float64) {
-		w.startTheta(β, ψ)
-		return w.eliminate(β, ψ)
-	}
-	_, f := at(β)
-	_, g := at(β + h)
-	for range 8 {
-		next := β - f*h/(g-f)
-		if !(math.Abs(next-β) < 1e-2*β) {
-			break
-		}
-		h = β - next
-		β, g = next, f
-		chi2, f = at(β)
-		if f == 0 || math.Abs(h) < 1e-13*β || g == f {
-			break
-		}
-	}
-	return basin{beta: β, chi2: chi2, atBound: true}
+	return false
 }

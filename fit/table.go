@@ -3,31 +3,37 @@ package fit
 import (
 	"math"
 
+	"candent/emissivity"
 	"candent/pyro"
 )
 
 // bandTable holds, for wide bands, smooth functions of β = 1/T as polynomials over equal
 // cells: what is left of ln S(β) after its rate, and the two-node Gauss rule of the
-// measure R·L within the band. An emissivity enters as w₋ε(λ₋) + w₊ε(λ₊), which is exact
+// measure R·L within the band. A linear emissivity enters with its mean coordinate, which
+// is exact; another enters as w₋ε(λ₋) + w₊ε(λ₊), which is exact
 // for polynomials in λ up to order 3 and leaves for others the fourth order,
 // (σ⁴/24)(κ−1−γ²)·ε⁗ with σ, γ, κ width, skewness and kurtosis of the measure.
 type bandTable struct {
-	cells    int
-	from, by float64   // first β and cell width
-	coef     []float64 // [cell][channel][function][power]
-	n        int
+	cells     int
+	from, by  float64   // first β and cell width
+	coef      []float64 // [cell][channel][function][power]
+	n         int
+	functions int // tableMean or tableFunctions
 }
 
 const (
 	tableCells     = 48
 	tableDegree    = 8
-	tableFunctions = 4 // ln S + rate·β; d₋; d₊; w₊, d the family's coordinate
-	tableRow       = tableFunctions * (tableDegree + 1)
+	tableMean      = 2 // ln S + rate·β; mean of the family's coordinate d
+	tableFunctions = 5 // and d₋, d₊, w₊ where the mean alone doesn't make ε
 )
 
 func newBandTable(e *Estimator) *bandTable {
-	t := &bandTable{cells: tableCells, from: e.hottest, by: (e.coldest - e.hottest) / tableCells, n: e.n}
-	t.coef = make([]float64, t.cells*t.n*tableRow)
+	t := &bandTable{cells: tableCells, from: e.hottest, by: (e.coldest - e.hottest) / tableCells, n: e.n, functions: tableFunctions}
+	if e.link == emissivity.Identity && e.p <= 2 {
+		t.functions = tableMean
+	}
+	t.coef = make([]float64, t.cells*t.n*t.width())
 	var toPower [tableDegree + 1][tableDegree + 1]float64
 	nodes := chebyshevNodes(&toPower)
 	var f [tableFunctions][tableDegree + 1]float64
@@ -36,14 +42,15 @@ func newBandTable(e *Estimator) *bandTable {
 			for k, z := range nodes {
 				β := t.from + t.by*(float64(cell)+(z+1)/2)
 				v := gaussRule(e.bands[i], β, e.rate[j])
-				v[1] = e.family.Coordinate(pyro.Wavelength(v[1]))
 				v[2] = e.family.Coordinate(pyro.Wavelength(v[2]))
+				v[3] = e.family.Coordinate(pyro.Wavelength(v[3]))
+				v[1] = (1-v[4])*v[2] + v[4]*v[3]
 				for g := range v {
 					f[g][k] = v[g]
 				}
 			}
 			row := t.row(cell, j)
-			for g := range f {
+			for g := range t.functions {
 				for a := range tableDegree + 1 {
 					sum := 0.0
 					for k := range f[g] {
@@ -58,9 +65,11 @@ func newBandTable(e *Estimator) *bandTable {
 }
 
 func (t *bandTable) row(cell, channel int) []float64 {
-	at := (cell*t.n + channel) * tableRow
-	return t.coef[at : at+tableRow]
+	at := (cell*t.n + channel) * t.width()
+	return t.coef[at : at+t.width()]
 }
+
+func (t *bandTable) width() int { return t.functions * (tableDegree + 1) }
 
 // locate returns the cell of β and the coordinate in it, −1 to 1.
 func (t *bandTable) locate(β float64) (cell int, z float64) {
@@ -100,7 +109,7 @@ func chebyshevNodes(toPower *[tableDegree + 1][tableDegree + 1]float64) (nodes [
 	return nodes
 }
 
-// gaussRule returns ln S + rate·β, and λ₋, λ₊, w₊ of the two-node Gauss rule of R·L at 1/T = β.
+// gaussRule returns ln S + rate·β, an empty place, and λ₋, λ₊, w₊ of the two-node Gauss rule of R·L at 1/T = β.
 func gaussRule(b *pyro.Band, β, rate float64) [tableFunctions]float64 {
 	λ, w := b.Nodes()
 	// Radiances relative to that at the mean keep the sums in range.
@@ -119,7 +128,7 @@ func gaussRule(b *pyro.Band, β, rate float64) [tableFunctions]float64 {
 		m3 += y * d * d * d
 	}
 	m1, m2, m3 = m1/m0, m2/m0, m3/m0
-	v := [tableFunctions]float64{math.Log(m0) + logMean + rate*β, float64(mean), float64(mean), 0.5}
+	v := [tableFunctions]float64{math.Log(m0) + logMean + rate*β, 0, float64(mean), float64(mean), 0.5}
 	variance := m2 - m1*m1
 	if len(λ) == 1 || variance <= 0 {
 		return v
@@ -127,8 +136,8 @@ func gaussRule(b *pyro.Band, β, rate float64) [tableFunctions]float64 {
 	σ := math.Sqrt(variance)
 	half := (m3 - 3*m1*m2 + 2*m1*m1*m1) / (2 * variance * σ) // half the skewness
 	root := math.Hypot(1, half)
-	v[1] = float64(mean) + m1 + σ*(half-root)
-	v[2] = float64(mean) + m1 + σ*(half+root)
-	v[3] = (1 - half/root) / 2
+	v[2] = float64(mean) + m1 + σ*(half-root)
+	v[3] = float64(mean) + m1 + σ*(half+root)
+	v[4] = (1 - half/root) / 2
 	return v
 }

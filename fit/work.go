@@ -14,13 +14,15 @@ type Work struct {
 	// the reading
 	signal, std []float64 // std: a of the variance a² + r²m²
 	rel         float64
-	log         []float64 // ln of the positive signals
+	log         []float64 // ln of the signals, where positive
+	haveLog     bool
 	mean        []float64 // of the shared inputs
 
 	// at one β
-	beta        float64
-	black, rate []float64 // S and d lnS/dβ
-	gauss       []float64 // wide bands: d₋, d₊, w₊ and their derivatives, n×6
+	beta          float64
+	black, rate   []float64 // S and d lnS/dβ
+	coord, dcoord []float64 // mean coordinate of R·L and its derivative by β
+	gauss         []float64 // wide bands: d₋, d₊, w₊ and their derivatives, n×6
 
 	// at one (β, ψ)
 	model, jac []float64 // m, and ∂m/∂(β, ψ), n×size
@@ -37,6 +39,18 @@ type Work struct {
 	rowRoom          []float64
 
 	grid []gridPoint
+
+	// the fast path
+	groups               []group
+	inverse              []float64 // 1/variance
+	gain, slope          []float64
+	effective            []float64
+	jointGrad, jointStep [3]float64
+	jointHess, jointCov  [6]float64
+	newton               [3]float64
+	bent                 float64
+	jointCost            float64 // χ², where joint has it; else 0
+	decrement            float64
 }
 
 type gridPoint struct{ beta, chi2, slope float64 }
@@ -50,8 +64,13 @@ func (e *Estimator) NewWork() *Work {
 		grad: f(s), hess: f(s * s), psi: f(s), trial: f(s), step: f(s), chol: f(s * s), invRow: f(s * (e.p + 1)),
 		active: make([]int, 0, e.p+1), activeLow: make([]bool, 0, e.p+1), schur: f((e.p + 1) * (e.p + 1)), multiply: f(e.p + 1), rowRoom: f(s),
 		grid: make([]gridPoint, gridSteps+1)}
+	w.coord = e.coord
 	if !e.lines {
+		w.coord, w.dcoord = f(e.n), f(e.n)
 		w.gauss = f(e.n * 6)
+	}
+	if e.fast != nil {
+		w.groups, w.inverse, w.gain, w.slope, w.effective = make([]group, e.fast.groups), f(e.n), f(e.n), f(e.n), f(e.n)
 	}
 	return w
 }
@@ -105,10 +124,10 @@ func (w *Work) load(r Readings) error {
 	if largest == 0 {
 		return fmt.Errorf("%w: every signal is 0", ErrReadings)
 	}
-	for j, s := range w.signal {
-		w.log[j] = math.Inf(-1)
-		if s > 0 {
-			w.log[j] = math.Log(s)
+	w.haveLog = false
+	if e.fast != nil {
+		for j, u := range w.std {
+			w.inverse[j] = 1 / (u * u)
 		}
 	}
 	w.beta = math.NaN()
@@ -122,40 +141,58 @@ func (w *Work) blackbody(β float64) {
 	}
 	w.beta = β
 	e := w.e
+	black, rate := w.black[:e.n], w.rate[:e.n]
 	if e.lines {
 		for j, k := range e.rate {
-			x := k * β
-			rest := 1.0 // 1 − e⁻ˣ
-			y := math.Exp(-x)
-			if x > 0.7 {
-				rest -= y
-			} else {
-				rest = -math.Expm1(-x)
+			black[j] = -k * β
+		}
+		expTo(black, black)
+		for j, y := range black {
+			rest := 1 - y // 1 − e⁻ˣ
+			if y > 0.5 {
+				rest = -math.Expm1(-e.rate[j] * β)
 			}
-			w.black[j] = e.peak[j] * y / rest
-			w.rate[j] = -k / rest
+			inverse := 1 / rest
+			black[j] = e.peak[j] * y * inverse
+			rate[j] = -e.rate[j] * inverse
 		}
 		return
 	}
-	cell, z := e.table.locate(β)
-	scale := 2 / e.table.by
+	t := e.table
+	cell, z := t.locate(β)
+	scale := 2 / t.by
 	for j, k := range e.rate {
-		row := e.table.row(cell, j)
-		var v, d [tableFunctions]float64
-		for f := range v {
-			c := row[f*(tableDegree+1) : (f+1)*(tableDegree+1)]
-			a, b := c[tableDegree], 0.0
-			for i := tableDegree - 1; i >= 0; i-- {
-				b = b*z + a
-				a = a*z + c[i]
-			}
-			v[f], d[f] = a, b*scale
-		}
-		w.black[j] = math.Exp(v[0] - k*β)
-		w.rate[j] = d[0] - k
-		copy(w.gauss[6*j:], v[1:])
-		copy(w.gauss[6*j+3:], d[1:])
+		row := t.row(cell, j)
+		var d float64
+		black[j], d = horner(row[:tableDegree+1], z)
+		black[j] -= k * β
+		rate[j] = d*scale - k
+		w.coord[j], d = horner(row[tableDegree+1:2*(tableDegree+1)], z)
+		w.dcoord[j] = d * scale
 	}
+	expTo(black, black)
+	if t.functions == tableMean {
+		return
+	}
+	for j := range black {
+		row := t.row(cell, j)[2*(tableDegree+1):]
+		n := w.gauss[6*j : 6*j+6]
+		for f := range 3 {
+			var d float64
+			n[f], d = horner(row[f*(tableDegree+1):(f+1)*(tableDegree+1)], z)
+			n[3+f] = d * scale
+		}
+	}
+}
+
+// horner returns Σ cᵢzⁱ and its derivative.
+func horner(c []float64, z float64) (v, slope float64) {
+	v = c[len(c)-1]
+	for i := len(c) - 2; i >= 0; i-- {
+		slope = slope*z + v
+		v = v*z + c[i]
+	}
+	return v, slope
 }
 
 // curve returns ε (or the amplitude) at the coordinate d and its derivative.
@@ -184,9 +221,14 @@ func (w *Work) evaluate(β float64, ψ []float64, expected bool) float64 {
 		row := w.jac[j*size : (j+1)*size]
 		s, rate := w.black[j], w.rate[j]
 		var ε, dβ float64
-		if e.lines {
-			d := e.coord[j]
-			ε, _ = e.curve(θ, d)
+		if w.gauss == nil || e.table.functions == tableMean {
+			d := w.coord[j]
+			ε, dβ = e.curve(θ, d)
+			if e.lines {
+				dβ = 0
+			} else {
+				dβ *= w.dcoord[j]
+			}
 			f := s
 			if e.link == emissivity.Exp {
 				f *= ε

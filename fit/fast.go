@@ -1,0 +1,452 @@
+package fit
+
+import (
+	"math"
+	"slices"
+
+	"candent/emissivity"
+)
+
+// The fast path: where the assumptions are plain and every channel stands well above its
+// noise, the basins are found without a scan. In the logarithm a reading is
+//
+//	ln(s/c₁Lλ⁻⁵) = −(c₂/λ)β − ln(1 − e^(−c₂β/λ)) + ln ε(λ)
+//
+// linear in β and in ln ε but for Planck's small term, so a family of ln ε has one
+// minimum and a linear least-squares fit starts it. A linear ε = a(1 + t·x), x from −1 to
+// 1 over the channels, is linear in β and ln a at each relative slope t: the minima over
+// t are the basins. Channels are first averaged into a few groups; the starts are then
+// refined on all of them, on the exact model. Whatever is out of the ordinary goes to the
+// scan, which is the reference that this path is tested to equal.
+
+const (
+	maxGroups  = 12
+	mirrorEnd  = 0.93  // the largest |t| at which the second minimum is looked for
+	coarse     = 10    // steps of t over its range that are looked at first
+	slopeEnd   = 0.995 // the largest |t|: ε at one edge is then 0.5 % of the mean
+	clearlySet = 5     // a signal of so many σ has a logarithm to speak of
+	farAbove   = 25.0  // Δχ² of a start beyond which a second minimum is not followed
+	fastLimit  = 12.0  // Δχ² of an interval beyond which it asks the scan for its basins
+	wienEnough = 3.0   // least c₂β/λ at which the start may take Planck's term as known
+	fastSteps  = 25    // refining steps before the scan is asked
+	fastDone   = 2e-7  // of u: what may be left of the way to the lowest minimum
+	roughly    = 1e-3  // of u: what may be left of the way to another
+	maxStep    = 0.02  // of β: a longer refining step is cut to this
+)
+
+// fastPlan is what the fast path needs beforehand.
+type fastPlan struct {
+	groups int
+	of     []int     // group of each channel
+	logPk  []float64 // ln(c₁Lλ⁻⁵)
+	x      []float64 // scaled coordinate −1 … 1 of the channels (linear family)
+	mid    float64   // d = mid + half·x
+	half   float64
+	t      [coarse + 1]float64
+}
+
+// compileFast returns the plan, or nil where the assumptions are not plain.
+func (e *Estimator) compileFast() *fastPlan {
+	a := e.assume
+	plain := !slices.Contains(e.fixed, true) && len(e.data) == 0
+	if !plain || e.p > 2 || e.q > 0 || e.whiten != nil || a.Loss.kind != square ||
+		a.Temperature != (TemperaturePrior{}) || e.deficient != "" || e.n < e.p+2 {
+		return nil
+	}
+	f := &fastPlan{groups: min(e.n, maxGroups), of: make([]int, e.n), logPk: make([]float64, e.n), x: make([]float64, e.n)}
+	order := make([]int, e.n)
+	for j := range order {
+		order[j] = j
+		f.logPk[j] = math.Log(e.peak[j])
+	}
+	slices.SortStableFunc(order, func(a, b int) int {
+		if e.rate[a] != e.rate[b] && (e.rate[a] > e.rate[b]) {
+			return -1
+		} else if e.rate[a] < e.rate[b] {
+			return 1
+		}
+		return 0
+	})
+	lo, hi := e.coord[order[0]], e.coord[order[e.n-1]]
+	f.mid, f.half = (lo+hi)/2, (hi-lo)/2
+	for i, j := range order {
+		g := i * f.groups / e.n
+		f.of[j] = g
+		if f.half > 0 {
+			f.x[j] = (e.coord[j] - f.mid) / f.half
+		}
+	}
+	for k := range f.t { // closer together towards the ends, where ln(1 + t·x) bends
+		f.t[k] = slopeEnd * math.Sin(math.Pi*(float64(k)/coarse-0.5))
+	}
+	return f
+}
+
+// group is a few neighbouring channels as one.
+type group struct{ weight, y, k, x, planck float64 }
+
+// fastBasins finds the basins without a scan; ok is false where it won't answer for them.
+func (w *Work) fastBasins(dst []basin) (list []basin, ok bool) {
+	e := w.e
+	dst = dst[:0]
+	f := e.fast
+	if f == nil || !w.grouped() {
+		return dst, false
+	}
+	if e.link == emissivity.Identity && e.p == 2 {
+		return w.linearBasins(dst)
+	}
+	β, θ0, θ1, ok := w.logStart()
+	if !ok {
+		return dst, false
+	}
+	b, got := w.refineFast(β, θ0, θ1, fastDone)
+	return append(dst, b), got == converged
+}
+
+// grouped averages ln(s/c₁Lλ⁻⁵) over the groups, with weights (s/σ)².
+func (w *Work) grouped() bool {
+	e, f := w.e, w.e.fast
+	g := w.groups[:f.groups]
+	clear(g)
+	if !w.haveLog {
+		logTo(w.log, w.signal)
+		w.haveLog = true
+	}
+	least := math.Inf(1)
+	for j, s := range w.signal {
+		weight := s * s * w.inverse[j]
+		if w.rel > 0 {
+			weight = s * s / (w.std[j]*w.std[j] + w.rel*w.rel*s*s)
+		}
+		if s < 0 {
+			weight = 0
+		}
+		least = min(least, weight)
+		p := &g[f.of[j]]
+		p.weight += weight
+		p.y += weight * (w.log[j] - f.logPk[j])
+		p.k += weight * e.rate[j]
+		p.x += weight * f.x[j]
+	}
+	if !(least >= clearlySet*clearlySet) {
+		return false
+	}
+	for i := range g {
+		inv := 1 / g[i].weight
+		g[i].y *= inv
+		g[i].k *= inv
+		g[i].x *= inv
+	}
+	return true
+}
+
+// addPlanck moves Planck's term, taken at β, to the data: y + ln(1 − e^(−kβ)).
+func (w *Work) addPlanck(β float64) bool {
+	for i := range w.groups[:w.e.fast.groups] {
+		p := &w.groups[i]
+		x := p.k * β
+		if x < wienEnough {
+			return false
+		}
+		p.y += p.planck
+		p.planck = -math.Log1p(-math.Exp(-x))
+		p.y -= p.planck
+	}
+	return true
+}
+
+// logStart fits β, ln ε and its slope to the groups, Planck's term included.
+func (w *Work) logStart() (β, θ0, θ1 float64, ok bool) {
+	e, f := w.e, w.e.fast
+	for round := range 4 {
+		// Weighted means, then the normal equations of what is left.
+		var s, y, k, x float64
+		for _, p := range w.groups[:f.groups] {
+			s += p.weight
+			y += p.weight * p.y
+			k += p.weight * p.k
+			x += p.weight * p.x
+		}
+		y, k, x = y/s, k/s, x/s
+		var kk, kx, xx, ky, xy float64
+		for _, p := range w.groups[:f.groups] {
+			dk, dx, dy := p.k-k, p.x-x, p.y-y
+			kk += p.weight * dk * dk
+			kx += p.weight * dk * dx
+			xx += p.weight * dx * dx
+			ky += p.weight * dk * dy
+			xy += p.weight * dx * dy
+		}
+		before := β
+		slope := 0.0
+		if e.p == 1 {
+			β = -ky / kk
+		} else {
+			det := kk*xx - kx*kx
+			if !(det > 1e-10*kk*xx) {
+				return 0, 0, 0, false
+			}
+			β = -(ky*xx - kx*xy) / det
+			slope = (kk*xy - kx*ky) / det
+		}
+		if !(β > e.hottest && β < e.coldest) {
+			return 0, 0, 0, false
+		}
+		θ0 = y + k*β - slope*x
+		if round > 0 && math.Abs(β-before) < 1e-3*β || !w.addPlanck(β) {
+			if round == 0 {
+				return 0, 0, 0, false
+			}
+			if e.p == 2 {
+				θ1 = slope / f.half
+				θ0 -= θ1 * f.mid
+			}
+			break
+		}
+		if round == 3 {
+			return 0, 0, 0, false
+		}
+	}
+	if e.link == emissivity.Identity {
+		θ0 = math.Exp(θ0)
+	}
+	return β, θ0, θ1, true
+}
+
+// point is the groups' χ² at one relative slope t, with the β and ln a that make it.
+type point struct{ t, chi2, beta, level float64 }
+
+// profile fits β and ln a to the groups at the relative slope t.
+func (w *Work) profile(t float64) point {
+	groups := w.groups[:w.e.fast.groups]
+	var log [maxGroups]float64
+	for g, p := range groups {
+		log[g] = 1 + t*p.x
+	}
+	logTo(log[:len(groups)], log[:len(groups)])
+	var s, k, r float64
+	for g, p := range groups {
+		log[g] = p.y - log[g]
+		s += p.weight
+		k += p.weight * p.k
+		r += p.weight * log[g]
+	}
+	k /= s
+	r /= s
+	var kk, kr, rr float64
+	for g, p := range groups {
+		dk, dr := p.k-k, log[g]-r
+		kk += p.weight * dk * dk
+		kr += p.weight * dk * dr
+		rr += p.weight * dr * dr
+	}
+	β := -kr / kk
+	return point{t, rr - kr*kr/kk, β, r + k*β}
+}
+
+// linearBasins finds the minima over the relative slope t, and refines them.
+//
+// There are two at the most, and they mirror each other. To second order in x, and
+// modulo what β and ln a take up, ln(1 + t·x) is −½t(t − 2ξ)x², ξ the slope of ε ∝ λ:
+// it is the same at t and 2ξ − t. So one minimum shows where to look for the other.
+func (w *Work) linearBasins(dst []basin) (list []basin, ok bool) {
+	e, f := w.e, w.e.fast
+	grey := w.profile(0) // to take Planck's term at
+	if !(grey.beta > e.hottest && grey.beta < e.coldest) || !w.addPlanck(grey.beta) {
+		return dst, false
+	}
+	var scan [coarse + 1]point
+	lowest := 0
+	for k, t := range f.t {
+		scan[k] = w.profile(t)
+		if scan[k].chi2 < scan[lowest].chi2 {
+			lowest = k
+		}
+	}
+	if lowest == 0 || lowest == coarse {
+		return dst, false // ε falls to 0 at an edge of the spectrum: the bounds matter
+	}
+	first, near := w.groupStart(scan[lowest])
+	if !near {
+		return dst, false
+	}
+	far := first.chi2 + farAbove
+	if e.assume.Noise.unknown {
+		far = first.chi2 * (1 + farAbove/float64(e.n-e.p-1))
+	}
+	ξ := f.half / (f.mid - e.family.Coordinate(0))
+	second, two := w.mirrored(first, ξ)
+	if !two && second.chi2 < far {
+		if top := w.profile((first.t + second.t) / 2); second.chi2 < top.chi2-1e-6*(1+top.chi2) {
+			return dst, false // there is a valley, and the way to its bottom was lost
+		}
+	}
+	if scan[0].chi2 < min(scan[1].chi2, far) || scan[coarse].chi2 < min(scan[coarse-1].chi2, far) {
+		return dst, false
+	}
+	if two && second.chi2 < first.chi2 {
+		first, second = second, first
+	}
+	found, got := w.refineLinear(first, fastDone)
+	if got != converged || w.bent < 0.4 || w.bent > 2.5 {
+		return dst, false
+	}
+	dst = append(dst, found)
+	if !two || second.chi2 > far {
+		return dst, true
+	}
+	other, got := w.refineLinear(second, roughly)
+	if got == converged && other.chi2 < found.chi2 { // the logarithm had put it second
+		other, got = w.refineFast(other.beta, other.theta[0], other.theta[1], fastDone)
+	}
+	if got == failed {
+		return dst, false
+	}
+	if got == converged {
+		before := len(dst)
+		if dst = insertBasin(dst, other); len(dst) == before {
+			return dst, false // both led to one minimum: let the scan decide
+		}
+	}
+	return dst, true
+}
+
+// mirrored looks for the minimum on the other side of ε ∝ λ; it returns the place where it
+// looked where there is none.
+func (w *Work) mirrored(first point, ξ float64) (point, bool) {
+	at := w.profile(max(-mirrorEnd, min(mirrorEnd, 2*ξ-first.t)))
+	second, near := w.groupStart(at)
+	if !near || math.Abs(second.t-first.t) < 1e-3 {
+		return at, false
+	}
+	return second, true
+}
+
+// refineLinear takes a minimum of the groups to one of all channels.
+func (w *Work) refineLinear(p point, done float64) (basin, outcome) {
+	f := w.e.fast
+	ε := math.Exp(p.level)
+	θ1 := ε * p.t / f.half
+	return w.refineFast(p.beta, ε-θ1*f.mid, θ1, done)
+}
+
+// groupStart takes a start to the minimum of the groups alone, in the logarithm:
+// y = −kβ − ln(1 − e^(−kβ)) + ln ε + ln(1 + t·x).
+func (w *Work) groupStart(p point) (point, bool) {
+	β, lnε, t := p.beta, p.level, p.t
+	var rest, tilt, log [maxGroups]float64
+	groups := w.groups[:w.e.fast.groups]
+	for range 8 {
+		for i, p := range groups {
+			rest[i] = -p.k * β
+		}
+		expTo(rest[:len(groups)], rest[:len(groups)])
+		for i, p := range groups {
+			rest[i] = 1 - rest[i]
+			tilt[i] = 1 + t*p.x
+			log[i] = rest[i] / tilt[i]
+		}
+		logTo(log[:len(groups)], log[:len(groups)])
+		var grad [3]float64
+		var hess [6]float64
+		chi2 := 0.0
+		for i, p := range groups {
+			r := p.y + p.planck + p.k*β - lnε + log[i]
+			jβ, jt := -p.k/rest[i], p.x/tilt[i]
+			u := p.weight * r
+			chi2 += u * r
+			grad[0] += u * jβ
+			grad[1] += u
+			grad[2] += u * jt
+			hess[0] += p.weight * jβ * jβ
+			hess[1] += p.weight * jβ
+			hess[2] += p.weight * jβ * jt
+			hess[3] += p.weight
+			hess[4] += p.weight * jt
+			// Newton's curvature: ∂²/∂t² is −jt², ∂²/∂β² is k²e⁻ˣ/(1−e⁻ˣ)².
+			hess[0] -= u * jβ * jβ * (1 - rest[i])
+			hess[5] += (p.weight + u) * jt * jt
+		}
+		w.jointGrad, w.jointHess = grad, hess
+		if !w.jointSolve() {
+			return p, false
+		}
+		step := w.jointStep
+		cut := min(1, 0.25/math.Abs(step[2])) // of t, which is of order 1
+		β += cut * step[0]
+		lnε += cut * step[1]
+		t += cut * step[2]
+		if !(math.Abs(t) < 1) || !(β > 0) {
+			return p, false
+		}
+		if w.decrement < 0.02 {
+			return point{t, chi2 - w.decrement, β, lnε}, true
+		}
+	}
+	return p, false
+}
+
+// outcome is how a refinement ended.
+type outcome int
+
+const (
+	failed  outcome = iota
+	outside         // of the temperature range
+	converged
+)
+
+// refineFast takes a start to the minimum by Newton's or Gauss–Newton steps (Fisher scoring
+// where the noise is relative) in β, level and slope, until about done·u is left of the way. It
+// refuses where they don't converge, or where the minimum lies outside the range or the
+// bounds of the emissivity.
+func (w *Work) refineFast(β, θ0, θ1, done float64) (basin, outcome) {
+	e := w.e
+	before := 0.0
+	for range fastSteps {
+		if !(β > e.hottest && β < e.coldest) {
+			return basin{}, outside
+		}
+		w.joint(β, θ0, θ1)
+		if !w.newtonSolve() {
+			return basin{}, failed
+		}
+		step := w.jointStep
+		cut := min(1, maxStep*β/math.Abs(step[0]))
+		if !(cut > 0) {
+			return basin{}, failed
+		}
+		β += cut * step[0]
+		θ0 += cut * step[1]
+		θ1 += cut * step[2]
+		// Steps shrink by a constant factor, or faster: what is left is about the last
+		// one times that factor.
+		length := math.Sqrt(w.decrement)
+		rate := length / before
+		if w.newton == ([3]float64{}) {
+			rate = max(rate, 0.1) // Gauss–Newton shrinks its steps less evenly
+		}
+		if left := length * min(1, rate); cut == 1 && (left <= done || math.Abs(step[0]) <= 1e-13*β) {
+			if !e.within(θ0, θ1) {
+				return basin{}, failed
+			}
+			return basin{beta: β, chi2: w.jointChi2() - w.decrement, fast: true, theta: [2]float64{θ0, θ1}, cov: w.jointCov}, converged
+		}
+		before = length
+	}
+	return basin{}, failed
+}
+
+// within reports whether the bounds of the emissivity are satisfied.
+func (e *Estimator) within(θ0, θ1 float64) bool {
+	for r := 0; r < len(e.limits); r += e.p {
+		v := θ0
+		if e.p == 2 {
+			v += θ1 * e.limits[r+1]
+		}
+		if !(v > e.lower && v < e.upper) {
+			return false
+		}
+	}
+	return true
+}

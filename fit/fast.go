@@ -22,7 +22,6 @@ import (
 const (
 	maxGroups  = 12
 	mirrorEnd  = 0.93  // the largest |t| at which the second minimum is looked for
-	coarse     = 10    // steps of t over its range that are looked at first
 	slopeEnd   = 0.995 // the largest |t|: ε at one edge is then 0.5 % of the mean
 	clearlySet = 5     // a signal of so many σ has a logarithm to speak of
 	farAbove   = 25.0  // Δχ² of a start beyond which a second minimum is not followed
@@ -42,7 +41,6 @@ type fastPlan struct {
 	x      []float64 // scaled coordinate −1 … 1 of the channels (linear family)
 	mid    float64   // d = mid + half·x
 	half   float64
-	t      [coarse + 1]float64
 }
 
 // compileFast returns the plan, or nil where the assumptions are not plain.
@@ -75,9 +73,6 @@ func (e *Estimator) compileFast() *fastPlan {
 		if f.half > 0 {
 			f.x[j] = (e.coord[j] - f.mid) / f.half
 		}
-	}
-	for k := range f.t { // closer together towards the ends, where ln(1 + t·x) bends
-		f.t[k] = slopeEnd * math.Sin(math.Pi*(float64(k)/coarse-0.5))
 	}
 	return f
 }
@@ -256,18 +251,7 @@ func (w *Work) linearBasins(dst []basin) (list []basin, ok bool) {
 	if !(grey.beta > e.hottest && grey.beta < e.coldest) || !w.addPlanck(grey.beta) {
 		return dst, false
 	}
-	var scan [coarse + 1]point
-	lowest := 0
-	for k, t := range f.t {
-		scan[k] = w.profile(t)
-		if scan[k].chi2 < scan[lowest].chi2 {
-			lowest = k
-		}
-	}
-	if lowest == 0 || lowest == coarse {
-		return dst, false // ε falls to 0 at an edge of the spectrum: the bounds matter
-	}
-	first, near := w.groupStart(scan[lowest])
+	first, near := w.groupStart(w.profile(0))
 	if !near {
 		return dst, false
 	}
@@ -278,18 +262,17 @@ func (w *Work) linearBasins(dst []basin) (list []basin, ok bool) {
 	ξ := f.half / (f.mid - e.family.Coordinate(0))
 	second, two := w.mirrored(first, ξ)
 	if !two && second.chi2 < far {
-		if top := w.profile((first.t + second.t) / 2); second.chi2 < top.chi2-1e-6*(1+top.chi2) {
+		top := w.profile((first.t + second.t) / 2)
+		edge := w.profile(math.Copysign(slopeEnd, second.t-first.t))
+		if min(second.chi2, edge.chi2) < top.chi2-1e-6*(1+top.chi2) {
 			return dst, false // there is a valley, and the way to its bottom was lost
 		}
-	}
-	if scan[0].chi2 < min(scan[1].chi2, far) || scan[coarse].chi2 < min(scan[coarse-1].chi2, far) {
-		return dst, false
 	}
 	if two && second.chi2 < first.chi2 {
 		first, second = second, first
 	}
 	found, got := w.refineLinear(first, fastDone)
-	if got != converged || w.bent < 0.4 || w.bent > 2.5 {
+	if got != converged || found.bent < 0.4 || found.bent > 2.5 {
 		return dst, false
 	}
 	dst = append(dst, found)
@@ -427,10 +410,11 @@ func (w *Work) refineFast(β, θ0, θ1, done float64) (basin, outcome) {
 			rate = max(rate, 0.1) // Gauss–Newton shrinks its steps less evenly
 		}
 		if left := length * min(1, rate); cut == 1 && (left <= done || math.Abs(step[0]) <= 1e-13*β) {
-			if !e.within(θ0, θ1) {
+			cov, bent, ok := w.expectedCov()
+			if !ok || !e.within(θ0, θ1) {
 				return basin{}, failed
 			}
-			return basin{beta: β, chi2: w.jointChi2() - w.decrement, fast: true, theta: [2]float64{θ0, θ1}, cov: w.jointCov}, converged
+			return basin{beta: β, chi2: w.jointChi2() - w.decrement, fast: true, theta: [2]float64{θ0, θ1}, cov: cov, bent: bent}, converged
 		}
 		before = length
 	}

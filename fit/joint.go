@@ -148,68 +148,68 @@ func (w *Work) jointLines(β, θ0, θ1 float64) {
 	w.jointHess = [6]float64{h00, h01, h02, h11, h12, h22}
 }
 
-// newtonSolve is jointSolve with Newton's curvature where there is one; jointCov stays
-// that of the expected curvature, and bent is how much of the curvature along β is left
-// of the expected one. It fails where the point is no minimum's neighbourhood.
+// newtonSolve is jointSolve with Newton's curvature, where there is one. It fails where the
+// point is in no minimum's neighbourhood.
 func (w *Work) newtonSolve() bool {
-	if !w.jointSolve() {
-		return false
-	}
-	w.bent = 1
 	if w.newton == ([3]float64{}) {
-		return true
+		return w.jointSolve()
 	}
-	expected, cov := w.jointHess, w.jointCov
+	expected := w.jointHess
 	for i, v := range w.newton {
 		w.jointHess[i] -= v
 	}
 	ok := w.jointSolve()
-	w.bent = cov[0] / w.jointCov[0]
-	w.jointHess, w.jointCov = expected, cov
+	w.jointHess = expected
 	return ok
 }
 
-// jointSolve solves for the step by a Cholesky factorisation of the scaled matrix and
-// sets decrement = gᵀH⁻¹g. It fails where a direction is not fixed.
+// jointSolve solves for the step by LDLᵀ, in the order θ₀, θ₁, β, and sets decrement to
+// gᵀH⁻¹g, the squared length of the step in units of u. It fails where a direction is not
+// fixed; pivots are judged against their diagonal, so units don't matter.
 func (w *Work) jointSolve() bool {
-	h := &w.jointHess
-	if !(h[0] > 0) || !(h[3] > 0) || !(h[5] > 0) {
+	h, g := &w.jointHess, &w.jointGrad
+	if !(h[3] > 0) {
 		return false
 	}
-	// order: θ₀, θ₁, β, so that the last pivot is 1/u² of β.
-	s0, s1, s2 := 1/math.Sqrt(h[3]), 1/math.Sqrt(h[5]), 1/math.Sqrt(h[0])
-	l10 := h[4] * s0 * s1
-	d1 := 1 - l10*l10
-	if !(d1 > pivotFloor) {
+	r0 := 1 / h[3]
+	l1, l2 := h[4]*r0, h[1]*r0
+	d1 := h[5] - l1*h[4]
+	if !(d1 > pivotFloor*h[5]) {
 		return false
 	}
-	p1 := math.Sqrt(d1)
-	l20 := h[1] * s0 * s2
-	l21 := (h[2]*s1*s2 - l20*l10) / p1
-	d2 := 1 - l20*l20 - l21*l21
-	if !(d2 > 1e-11) { // closer to degenerate the orthogonal path decides
+	r1 := 1 / d1
+	t := h[2] - l2*h[4]
+	l3 := t * r1
+	d2 := h[0] - l2*h[1] - l3*t
+	if !(d2 > 1e-11*h[0]) { // closer to degenerate the orthogonal path decides
 		return false
 	}
-	p2 := math.Sqrt(d2)
-	y0 := w.jointGrad[1] * s0
-	y1 := (w.jointGrad[2]*s1 - l10*y0) / p1
-	y2 := (w.jointGrad[0]*s2 - l20*y0 - l21*y1) / p2
-	w.decrement = y0*y0 + y1*y1 + y2*y2
-	x2 := y2 / p2
-	x1 := (y1 - l21*x2) / p1
-	x0 := y0 - l10*x1 - l20*x2
-	w.jointStep = [3]float64{x2 * s2, x0 * s0, x1 * s1}
-	// Inverse, row by row of L⁻¹: C = L⁻ᵀL⁻¹.
-	i11 := 1 / p1
-	i10 := -l10 * i11
-	i22 := 1 / p2
-	i21 := -l21 * i11 * i22
-	i20 := -(l20 + l21*i10) * i22
-	w.jointCov = [6]float64{ // ββ, βθ₀, βθ₁, θ₀θ₀, θ₀θ₁, θ₁θ₁
-		i22 * i22 * s2 * s2, i22 * i20 * s2 * s0, i22 * i21 * s2 * s1,
-		(1 + i10*i10 + i20*i20) * s0 * s0, (i10*i11 + i20*i21) * s0 * s1, (i11*i11 + i21*i21) * s1 * s1,
-	}
+	r2 := 1 / d2
+	y0 := g[1]
+	y1 := g[2] - l1*y0
+	y2 := g[0] - l2*y0 - l3*y1
+	w.decrement = y0*y0*r0 + y1*y1*r1 + y2*y2*r2
+	x2 := y2 * r2
+	x1 := y1*r1 - l3*x2
+	w.jointStep = [3]float64{x2, y0*r0 - l1*x1 - l2*x2, x1}
+	w.jointVar = r2
 	return true
+}
+
+// expectedCov returns the inverse of the expected curvature, in the order ββ, βθ₀, βθ₁,
+// θ₀θ₀, θ₀θ₁, θ₁θ₁, and how much of the curvature along β is left of the expected one.
+func (w *Work) expectedCov() (c [6]float64, bent float64, ok bool) {
+	newton := w.jointVar
+	h := w.jointHess
+	r0 := 1 / h[3]
+	l1, l2 := h[4]*r0, h[1]*r0
+	r1 := 1 / (h[5] - l1*h[4])
+	t := h[2] - l2*h[4]
+	l3 := t * r1
+	r2 := 1 / (h[0] - l2*h[1] - l3*t)
+	m2 := l1*l3 - l2 // row of L⁻¹ for β: (m2, −l3, 1); for θ₁: (−l1, 1)
+	c = [6]float64{r2, m2 * r2, -l3 * r2, r0 + l1*l1*r1 + m2*m2*r2, -l1*r1 - l3*m2*r2, r1 + l3*l3*r2}
+	return c, r2 / newton, r2 > 0 && r1 > 0
 }
 
 // jointChi2 returns χ² at the point of the last joint.

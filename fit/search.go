@@ -13,6 +13,7 @@ type basin struct {
 	fast       bool // found by the fast path, with θ and the covariance of (β, θ)
 	theta      [2]float64
 	cov        [6]float64
+	bent       float64 // how much of the expected curvature along β is there
 }
 
 // maxBasins is how many basins a result keeps; the lowest are kept.

@@ -46,9 +46,9 @@ type Work struct {
 	gain, slope          []float64
 	effective            []float64
 	jointGrad, jointStep [3]float64
-	jointHess, jointCov  [6]float64
+	jointHess            [6]float64
+	jointVar             float64 // of β, by the last solution
 	newton               [3]float64
-	bent                 float64
 	jointCost            float64 // χ², where joint has it; else 0
 	decrement            float64
 }

@@ -246,64 +246,67 @@ func (w *Work) profile(t float64) point {
 // modulo what β and ln a take up, ln(1 + t·x) is −½t(t − 2ξ)x², ξ the slope of ε ∝ λ:
 // it is the same at t and 2ξ − t. So one minimum shows where to look for the other.
 func (w *Work) linearBasins(dst []basin) (list []basin, ok bool) {
-	e, f := w.e, w.e.fast
+	e := w.e
 	grey := w.profile(0) // to take Planck's term at
 	if !(grey.beta > e.hottest && grey.beta < e.coldest) || !w.addPlanck(grey.beta) {
 		return dst, false
+	}
+	if e.n <= maxGroups {
+		// The groups are the channels: start them where their groups would be started.
+		if list, ok := w.mirrorPair(dst, w.profile(0)); ok {
+			return list, true
+		}
 	}
 	first, near := w.groupStart(w.profile(0))
 	if !near {
 		return dst, false
 	}
-	far := first.chi2 + farAbove
-	if e.assume.Noise.unknown {
-		far = first.chi2 * (1 + farAbove/float64(e.n-e.p-1))
-	}
-	ξ := f.half / (f.mid - e.family.Coordinate(0))
-	second, two := w.mirrored(first, ξ)
-	if !two && second.chi2 < far {
-		top := w.profile((first.t + second.t) / 2)
-		edge := w.profile(math.Copysign(slopeEnd, second.t-first.t))
-		if min(second.chi2, edge.chi2) < top.chi2-1e-6*(1+top.chi2) {
-			return dst, false // there is a valley, and the way to its bottom was lost
-		}
-	}
-	if two && second.chi2 < first.chi2 {
-		first, second = second, first
-	}
+	return w.mirrorPair(dst, first)
+}
+
+// mirrorPair refines a start and looks for the minimum that mirrors it.
+func (w *Work) mirrorPair(dst []basin, first point) (list []basin, ok bool) {
+	e, f := w.e, w.e.fast
+	dst = dst[:0]
 	found, got := w.refineLinear(first, fastDone)
 	if got != converged || found.bent < 0.4 || found.bent > 2.5 {
 		return dst, false
 	}
-	dst = append(dst, found)
-	if !two || second.chi2 > far {
-		return dst, true
+	far := farAbove
+	if e.assume.Noise.unknown {
+		far *= found.chi2 / float64(e.n-e.p-1)
 	}
-	other, got := w.refineLinear(second, roughly)
-	if got == converged && other.chi2 < found.chi2 { // the logarithm had put it second
-		other, got = w.refineFast(other.beta, other.theta[0], other.theta[1], fastDone)
+	t := found.theta[1] * f.half / (found.theta[0] + found.theta[1]*f.mid)
+	ξ := f.half / (f.mid - e.family.Coordinate(0))
+	start := w.profile(max(-mirrorEnd, min(mirrorEnd, 2*ξ-t)))
+	at, two := start, true
+	if e.n > maxGroups {
+		at, two = w.groupStart(start)
+		if two && at.chi2 > w.profile(t).chi2+far {
+			return append(dst, found), true
+		}
+		two = two && math.Abs(at.t-t) > 1e-3
 	}
-	if got == failed {
-		return dst, false
+	var other basin
+	if got = failed; two {
+		other, got = w.refineLinear(at, roughly)
 	}
-	if got == converged {
-		before := len(dst)
-		if dst = insertBasin(dst, other); len(dst) == before {
-			return dst, false // both led to one minimum: let the scan decide
+	switch {
+	case got == outside:
+		return append(dst, found), true
+	case got == failed || math.Abs(other.beta-found.beta) < 1e-5*found.beta:
+		// None found. Where the curve over t falls from the middle to the place looked at,
+		// or to the edge beyond it, there is one, and the way to it was lost.
+		top := w.profile((t + start.t) / 2)
+		edge := w.profile(math.Copysign(slopeEnd, start.t-t))
+		least := min(start.chi2, edge.chi2)
+		return append(dst, found), least > w.profile(t).chi2+far || least >= top.chi2-1e-6*(1+top.chi2)
+	case other.chi2 < found.chi2: // the start was nearer to the other one
+		if other, got = w.refineFast(other.beta, other.theta[0], other.theta[1], fastDone); got != converged || other.bent < 0.4 || other.bent > 2.5 {
+			return dst, false
 		}
 	}
-	return dst, true
-}
-
-// mirrored looks for the minimum on the other side of ε ∝ λ; it returns the place where it
-// looked where there is none.
-func (w *Work) mirrored(first point, ξ float64) (point, bool) {
-	at := w.profile(max(-mirrorEnd, min(mirrorEnd, 2*ξ-first.t)))
-	second, near := w.groupStart(at)
-	if !near || math.Abs(second.t-first.t) < 1e-3 {
-		return at, false
-	}
-	return second, true
+	return insertBasin(append(dst, found), other), true
 }
 
 // refineLinear takes a minimum of the groups to one of all channels.
@@ -391,7 +394,8 @@ func (w *Work) refineFast(β, θ0, θ1, done float64) (basin, outcome) {
 			return basin{}, outside
 		}
 		w.joint(β, θ0, θ1)
-		if !w.newtonSolve() {
+		newton := before > 0 && before < 1 && w.newtonSolve() // from afar it leaps too far
+		if !newton && !w.jointSolve() {
 			return basin{}, failed
 		}
 		step := w.jointStep
@@ -409,7 +413,7 @@ func (w *Work) refineFast(β, θ0, θ1, done float64) (basin, outcome) {
 		if w.newton == ([3]float64{}) {
 			rate = max(rate, 0.1) // Gauss–Newton shrinks its steps less evenly
 		}
-		if left := length * min(1, rate); cut == 1 && (left <= done || math.Abs(step[0]) <= 1e-13*β) {
+		if left := length * min(1, rate); newton && cut == 1 && (left <= done || math.Abs(step[0]) <= 1e-13*β) {
 			cov, bent, ok := w.expectedCov()
 			if !ok || !e.within(θ0, θ1) {
 				return basin{}, failed

@@ -41,14 +41,21 @@ func (w *Work) describe(β, θ0, θ1 float64) (d []float64) {
 		return d
 	}
 	d = w.effective[:len(black)]
+	lo, hi := w.low[:len(black)], w.high[:len(black)]
+	for j := range black {
+		n := w.gauss[6*j : 6*j+6]
+		lo[j], hi[j] = θ0+θ1*n[0], θ0+θ1*n[1]
+	}
+	expTo(lo, lo)
+	expTo(hi, hi)
 	for j, s := range black {
 		n := w.gauss[6*j : 6*j+6]
-		lo, hi := math.Exp(θ0+θ1*n[0]), math.Exp(θ0+θ1*n[1])
-		a, b := (1-n[2])*lo, n[2]*hi
+		a, b := (1-n[2])*lo[j], n[2]*hi[j]
 		ε := a + b
+		inverse := 1 / ε
 		model[j], g[j] = s*ε, s*ε
-		d[j] = (a*n[0] + b*n[1]) / ε
-		v[j] = rate[j] + (n[5]*(hi-lo)+θ1*(a*n[3]+b*n[4]))/ε
+		d[j] = (a*n[0] + b*n[1]) * inverse
+		v[j] = rate[j] + (n[5]*(hi[j]-lo[j])+θ1*(a*n[3]+b*n[4]))*inverse
 	}
 	return d
 }

@@ -22,8 +22,8 @@ type bandTable struct {
 }
 
 const (
-	tableCells     = 48
-	tableDegree    = 8
+	tableCells     = 128
+	tableDegree    = 5
 	tableMean      = 2 // ln S + rate·β; mean of the family's coordinate d
 	tableFunctions = 5 // and d₋, d₊, w₊ where the mean alone doesn't make ε
 )

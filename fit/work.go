@@ -44,7 +44,7 @@ type Work struct {
 	groups               []group
 	inverse              []float64 // 1/variance
 	gain, slope          []float64
-	effective            []float64
+	effective, low, high []float64
 	jointGrad, jointStep [3]float64
 	jointHess            [6]float64
 	jointVar             float64 // of β, by the last solution
@@ -71,6 +71,7 @@ func (e *Estimator) NewWork() *Work {
 	}
 	if e.fast != nil {
 		w.groups, w.inverse, w.gain, w.slope, w.effective = make([]group, e.fast.groups), f(e.n), f(e.n), f(e.n), f(e.n)
+		w.low, w.high = f(e.n), f(e.n)
 	}
 	return w
 }
@@ -164,10 +165,10 @@ func (w *Work) blackbody(β float64) {
 	for j, k := range e.rate {
 		row := t.row(cell, j)
 		var d float64
-		black[j], d = horner(row[:tableDegree+1], z)
+		black[j], d = horner((*[tableDegree + 1]float64)(row), z)
 		black[j] -= k * β
 		rate[j] = d*scale - k
-		w.coord[j], d = horner(row[tableDegree+1:2*(tableDegree+1)], z)
+		w.coord[j], d = horner((*[tableDegree + 1]float64)(row[tableDegree+1:]), z)
 		w.dcoord[j] = d * scale
 	}
 	expTo(black, black)
@@ -179,20 +180,23 @@ func (w *Work) blackbody(β float64) {
 		n := w.gauss[6*j : 6*j+6]
 		for f := range 3 {
 			var d float64
-			n[f], d = horner(row[f*(tableDegree+1):(f+1)*(tableDegree+1)], z)
+			n[f], d = horner((*[tableDegree + 1]float64)(row[f*(tableDegree+1):]), z)
 			n[3+f] = d * scale
 		}
 	}
 }
 
-// horner returns Σ cᵢzⁱ and its derivative.
-func horner(c []float64, z float64) (v, slope float64) {
-	v = c[len(c)-1]
-	for i := len(c) - 2; i >= 0; i-- {
-		slope = slope*z + v
-		v = v*z + c[i]
-	}
-	return v, slope
+// horner returns Σ cᵢzⁱ and its derivative, for the degree of the table.
+func horner(c *[tableDegree + 1]float64, z float64) (v, slope float64) {
+	v = c[4] + z*c[5]
+	slope = v + z*c[5]
+	v = c[3] + z*v
+	slope = v + z*slope
+	v = c[2] + z*v
+	slope = v + z*slope
+	v = c[1] + z*v
+	slope = v + z*slope
+	return c[0] + z*v, slope
 }
 
 // curve returns ε (or the amplitude) at the coordinate d and its derivative.

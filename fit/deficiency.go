@@ -17,7 +17,7 @@ func (e *Estimator) findDeficiency() string {
 		return ""
 	}
 	words := ""
-	for _, f := range []float64{0.25, 0.5, 0.75} {
+	for _, f := range []float64{0.25, 0.75, 0.5} {
 		β := math.Pow(e.hottest, f) * math.Pow(e.coldest, 1-f)
 		ψ := make([]float64, e.p+e.q)
 		ψ[0] = 0.5
@@ -120,5 +120,5 @@ func tradeOff(names []string, direction []float64, t float64) string {
 			parts = append(parts, fmt.Sprintf("%+.3g of %s", 0.01*v/unit, names[c]))
 		}
 	}
-	return "the readings would be the same with " + strings.Join(parts, ", ")
+	return fmt.Sprintf("near %.0f K the readings would be the same with ", t) + strings.Join(parts, ", ")
 }

@@ -98,12 +98,16 @@ func (r *Result) fillShares(w *Work) {
 // lackOfFit is the probability of a larger χ² below which a family counts as contradicted.
 const lackOfFit = 0.001
 
-func (r *Result) noteLackOfFit() {
-	if r.dof < 1 || r.e.assume.Noise.unknown || r.e.assume.Loss.kind != square {
-		return
+// contradicted reports whether χ² is larger than the assumptions leave likely.
+func (r *Result) contradicted() bool {
+	if !r.fitted || r.dof < 1 || r.e.assume.Noise.unknown || r.e.assume.Loss.kind != square {
+		return false
 	}
-	p := distuv.ChiSquared{K: float64(r.dof)}.Survival(r.chi2)
-	if p < lackOfFit {
+	return distuv.ChiSquared{K: float64(r.dof)}.Survival(r.chi2) < lackOfFit
+}
+
+func (r *Result) noteLackOfFit() {
+	if r.contradicted() {
 		r.note("the readings contradict the assumptions (%v, %v): χ² = %.3g on %d degrees of freedom; the interval holds only if they are right", r.e.family, r.e.assume.Noise, r.chi2, r.dof)
 	}
 }

@@ -193,7 +193,8 @@ func (r *Result) Emissivity(i int) (value, std float64, hasStd, ok bool) {
 }
 
 // Parameter returns the value and the standard uncertainty of a parameter of the family
-// by its name; ok is false where it is not determined. A fixed parameter has std 0.
+// by its name; ok is false where it is not determined, or where Uncertainty has none. A
+// fixed parameter has std 0.
 func (r *Result) Parameter(name string) (value, std float64, ok bool) {
 	if r.State() != Determined || !r.fitted {
 		return 0, 0, false
@@ -201,7 +202,7 @@ func (r *Result) Parameter(name string) (value, std float64, ok bool) {
 	size := r.e.size()
 	for k, n := range r.e.family.Parameters() {
 		if n == name {
-			if !r.hasCov && !r.e.fixed[k] {
+			if (!r.hasCov || r.inside() != 1) && !r.e.fixed[k] {
 				return 0, 0, false
 			}
 			return r.psi[k], math.Sqrt(max(r.cov[(1+k)*size+1+k], 0)), true

@@ -79,7 +79,7 @@ func formatQuantity(s fmt.State, verb rune, v float64, unit string) {
 	default:
 		verb = 'g'
 		if _, ok := s.Precision(); !ok {
-			fmt.Fprint(s, formatUnit(v, 'g', 10, unit))
+			fmt.Fprintf(s, fmt.FormatString(s, 's'), formatUnit(v, 'g', 10, unit))
 			return
 		}
 	}

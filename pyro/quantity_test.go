@@ -20,6 +20,7 @@ func TestScales(t *testing.T) {
 func TestEveryVerbPrintsTheUnit(t *testing.T) {
 	for _, r := range []struct{ format, want string }{
 		{"%v", "1357.77 K"}, {"%s", "1357.77 K"}, {"%.1f", "1357.8 K"}, {"%9.1f", "   1357.8 K"}, {"%d", "1357.77 K"},
+		{"%-12v|", "1357.77 K   |"}, {"%12v", "   1357.77 K"},
 	} {
 		if got := fmt.Sprintf(r.format, 1357.77*pyro.Kelvin); got != r.want {
 			t.Errorf("Sprintf(%q) = %q, want %q", r.format, got, r.want)

@@ -50,6 +50,7 @@ func (r *Result) note(format string, args ...any) {
 // describe fills the model and the σ of the channels at the estimate.
 func (r *Result) describe(w *Work) {
 	e := r.e
+	r.described = true
 	w.evaluate(r.beta, r.psi, true)
 	copy(r.model, w.model)
 	for j, m := range r.model {

@@ -9,9 +9,9 @@ import (
 	"strings"
 )
 
-// withUncertainty prints a value and its standard uncertainty, the latter to two
+// WithUncertainty prints a value and its standard uncertainty, the latter to two
 // significant digits and the former to the same place (JCGM 100:2008, 7.2.6).
-func withUncertainty(v, u float64) (value, std string) {
+func WithUncertainty(v, u float64) (value, std string) {
 	place := 0
 	if u > 0 {
 		place = 1 - int(math.Floor(math.Log10(u)))
@@ -34,8 +34,8 @@ func decimals(width float64) int {
 	return min(9, max(0, 2-int(math.Floor(math.Log10(width)))))
 }
 
-// assumption words what the result rests on.
-func (r *Result) assumption() string {
+// Assumption words what the result rests on.
+func (r *Result) Assumption() string {
 	s := r.e.family.String() + " assumed"
 	known := len(r.e.data) > 0
 	for _, fixed := range r.e.fixed {
@@ -66,7 +66,7 @@ func (r *Result) String() string {
 	u, hasU := r.Uncertainty()
 	switch {
 	case state == Determined && hasU:
-		value, std := withUncertainty(float64(t), u)
+		value, std := WithUncertainty(float64(t), u)
 		s = value + " K ± " + std + " K"
 		if has {
 			s += fmt.Sprintf(" (%s: %.*f to %.*f K)", percent, d, float64(iv.Low), d, float64(iv.High))
@@ -89,11 +89,11 @@ func (r *Result) String() string {
 	default:
 		s = "temperature undetermined"
 	}
-	s += "; " + r.assumption()
+	s += "; " + r.Assumption()
 	if state == Determined && hasU {
 		middle := r.e.used[len(r.e.used)/2]
 		if ε, std, hasStd, ok := r.Emissivity(middle); ok && hasStd {
-			v, u := withUncertainty(ε, std)
+			v, u := WithUncertainty(ε, std)
 			if r.Relative() {
 				v, u = fmt.Sprintf("%.3g", ε), fmt.Sprintf("%.2g", std)
 			}

@@ -2,7 +2,9 @@ package fit
 
 import (
 	"math"
+	"slices"
 
+	"candent/emissivity"
 	"candent/pyro"
 )
 
@@ -26,14 +28,15 @@ func (s State) String() string { return [...]string{"undetermined", "bounded", "
 type Result struct {
 	e *Estimator
 
-	basins []basin
-	beta   float64
-	chi2   float64
-	dof    int
-	psi    []float64
-	cov    []float64 // of (β, ψ)
-	hasCov bool
-	fitted bool
+	basins    []basin
+	beta      float64
+	chi2      float64
+	dof       int
+	psi       []float64
+	cov       []float64 // of (β, ψ)
+	hasCov    bool
+	fitted    bool
+	described bool // model and sigma are filled
 
 	signal, model, sigma []float64 // channels used; the latter two after DiagnoseTo
 
@@ -57,7 +60,7 @@ func (e *Estimator) NewResult() *Result {
 func (r *Result) reset(e *Estimator) {
 	r.e = e
 	r.basins, r.notes = r.basins[:0], r.notes[:0]
-	r.hasCov, r.fitted, r.hasInterval = false, false, false
+	r.hasCov, r.fitted, r.described, r.hasInterval = false, false, false, false
 	r.hot, r.cold = end{}, end{}
 	r.limit = math.Inf(-1)
 	clear(r.share)
@@ -163,33 +166,40 @@ func (r *Result) Emissivity(i int) (value, std float64, hasStd, ok bool) {
 		return 0, 0, false, false
 	}
 	e := r.e
-	for j, band := range e.used {
-		if band != i {
-			continue
-		}
-		value, _ = e.curve(r.psi[:e.p], e.coord[j])
-		if !r.hasCov || r.inside() != 1 {
-			return value, 0, false, true
-		}
-		var grad [8]float64
-		φ := 1.0
-		slope := 1.0
-		if e.lower != 0 {
-			slope = value
-		}
-		for k := range e.p {
-			grad[k] = slope * φ
-			φ *= e.coord[j]
-		}
-		sum, size := 0.0, e.size()
-		for a := range e.p {
-			for b := range e.p {
-				sum += grad[a] * grad[b] * r.cov[(1+a)*size+1+b]
-			}
-		}
-		return value, math.Sqrt(max(sum, 0)), true, true
+	j := slices.Index(e.used, i)
+	if j < 0 {
+		return 0, 0, false, false
 	}
-	return 0, 0, false, false
+	value, _ = e.curve(r.psi[:e.p], e.coord[j])
+	if !r.hasCov || r.inside() != 1 {
+		return value, 0, false, true
+	}
+	var grad [emissivity.MaxOrder + 1]float64
+	φ := 1.0
+	if e.link == emissivity.Exp {
+		φ = value
+	}
+	for k := range e.p {
+		grad[k] = φ
+		φ *= e.coord[j]
+	}
+	sum, size := 0.0, e.size()
+	for a := range e.p {
+		for b := range e.p {
+			sum += grad[a] * grad[b] * r.cov[(1+a)*size+1+b]
+		}
+	}
+	return value, math.Sqrt(max(sum, 0)), true, true
+}
+
+// Model returns the reading that the estimate explains in band i, and the standard
+// deviation that the noise has there; ok is false before DiagnoseTo and for masked bands.
+func (r *Result) Model(i int) (reading, std float64, ok bool) {
+	j := slices.Index(r.e.used, i)
+	if j < 0 || !r.described {
+		return 0, 0, false
+	}
+	return r.model[j], r.sigma[j], true
 }
 
 // Parameter returns the value and the standard uncertainty of a parameter of the family

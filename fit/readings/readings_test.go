@@ -99,7 +99,8 @@ func TestMissingCodesCanBeSet(t *testing.T) {
 func TestTwoColour(t *testing.T) {
 	for _, c := range []struct{ name, table, want string }{
 		{"seconds, unit, std", "time_s,short_mV,long_mV,short_std_mV,long_std_mV,remark\n0,1.5,10,0.01,0.05,a\n0.5,x,10,0.01,0.05,b\n1,1.6,11,0.01,0.05,c\n",
-			`0 s 1.5 10 ± 0.01 0.05
+			`in mV
+0 s 1.5 10 ± 0.01 0.05
 error: readings: line 3, column short_mV: "x" is not a number
 1 s 1.6 11 ± 0.01 0.05
 `},
@@ -117,6 +118,9 @@ error: readings: line 3, column time: "yesterday" is not a time of RFC 3339, suc
 		log, err := readings.NewTwoColour(strings.NewReader(c.table), readings.Settings{})
 		if err != nil {
 			fmt.Fprintf(&b, "header: %v\n", err)
+		}
+		if log != nil && log.Unit() != "" {
+			fmt.Fprintf(&b, "in %s\n", log.Unit())
 		}
 		for log != nil {
 			r, err := log.Next()

@@ -26,6 +26,7 @@ type TwoColour struct {
 	t                              *table
 	label                          int
 	short, long, shortStd, longStd int
+	unit                           string
 	row                            Row
 	done                           bool
 }
@@ -54,6 +55,7 @@ func NewTwoColour(r io.Reader, set Settings) (*TwoColour, error) {
 	if units[0] != units[1] {
 		return nil, fmt.Errorf("%w: %s, line %d: short is in %q and long in %q: they must be in one unit", ErrColumn, set.Name, t.line, units[0], units[1])
 	}
+	c.unit = units[0]
 	c.shortStd, c.longStd = t.column("short_std"+units[0]), t.column("long_std"+units[0])
 	if (c.shortStd < 0) != (c.longStd < 0) {
 		return nil, fmt.Errorf("%w: %s, line %d: one of short_std%s and long_std%s is missing", ErrColumn, set.Name, t.line, units[0], units[0])
@@ -72,6 +74,9 @@ func (t *table) withSuffix(name string) (column int, suffix string, ok bool) {
 	}
 	return 0, "", false
 }
+
+// Unit returns the unit suffix of the columns without its underscore, "" where there is none.
+func (c *TwoColour) Unit() string { return strings.TrimPrefix(c.unit, "_") }
 
 // Next returns the next row, io.EOF behind the last, or a *RowError, behind which Next may
 // be called again.

@@ -81,7 +81,10 @@ func (e *Estimator) linear() bool {
 func (w *Work) conditionalStep(ψ []float64) bool {
 	e := w.e
 	if !w.factor(1, e.size()) {
-		return false
+		w.ridge(e.size()) // a direction of ψ that nothing fixes stays where it is
+		if !w.factor(1, e.size()) {
+			return false
+		}
 	}
 	w.active, w.activeLow = w.active[:0], w.activeLow[:0]
 	for range 20 {
@@ -356,9 +359,13 @@ func (w *Work) startTheta(β float64, ψ []float64) {
 	}
 }
 
-// ridge keeps the start's normal matrix regular where channels are too few for it.
+// ridge makes the normal matrix of ψ regular where channels are too few for it.
 func (w *Work) ridge(size int) {
+	largest := 0.0
 	for a := 1; a < size; a++ {
-		w.hess[a*size+a] = w.hess[a*size+a]*(1+1e-9) + 1e-9
+		largest = max(largest, w.hess[a*size+a])
+	}
+	for a := 1; a < size; a++ {
+		w.hess[a*size+a] = w.hess[a*size+a]*(1+1e-9) + 1e-12*largest
 	}
 }

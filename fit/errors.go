@@ -28,3 +28,17 @@ func (e *ReadingError) Error() string {
 }
 
 func (e *ReadingError) Unwrap() error { return ErrReadings }
+
+// UnitError says that the spectrum's shape fixes a temperature at which the readings would
+// need an emissivity that no surface has: their unit is wrong, or the level is relative and
+// not declared so. It wraps ErrReadings.
+type UnitError struct {
+	Level       float64 // mean emissivity that the readings would need
+	Temperature float64 // K, that the shape fixes
+}
+
+func (e *UnitError) Error() string {
+	return fmt.Sprintf("fit: readings: their shape is that of %.0f K, where they would need an emissivity of %.2g: are they in W m⁻² sr⁻¹ m⁻¹ (1e6 times the figure per µm, 1e9 times that per nm)? For a signal in arbitrary units declare the family Relative", e.Temperature, e.Level)
+}
+
+func (e *UnitError) Unwrap() error { return ErrReadings }

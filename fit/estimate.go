@@ -9,13 +9,16 @@ import (
 	"candent/pyro"
 )
 
-// Estimate estimates one reading, with its interval and its diagnosis. It allocates a
-// Work and a Result; EstimateTo, IntervalTo and DiagnoseTo are the same three steps
-// without. An error alone means that the reading can't be used; a Result that knows no
+// Estimate estimates one reading, with its interval and its diagnosis, and suspects its
+// unit where the level is one that no surface has (*UnitError). It allocates a Work and a
+// Result; EstimateTo, IntervalTo and DiagnoseTo are the three steps without. An error alone means that the reading can't be used; a Result that knows no
 // temperature is not an error but a state.
 func (e *Estimator) Estimate(r Readings) (*Result, error) {
 	w, res := e.NewWork(), e.NewResult()
 	if err := e.EstimateTo(res, w, r); err != nil {
+		return nil, err
+	}
+	if err := e.checkUnit(r); err != nil {
 		return nil, err
 	}
 	if err := e.IntervalTo(res, w, r, e.assume.Probability); err != nil {

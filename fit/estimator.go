@@ -25,7 +25,8 @@ type Estimator struct {
 	rate    []float64 // c₂/λ, K
 	coord   []float64 // the family's coordinate d at each channel (lines)
 	table   *bandTable
-	fast    *fastPlan // nil where the assumptions are not plain
+	fast    *fastPlan  // nil where the assumptions are not plain
+	shape   *Estimator // the same with a relative level, to suspect units by; or nil
 
 	limits   []float64 // rows φ of the linear form where its bounds are held, each p long
 	lower    float64   // bounds of Σ θₖφₖ; infinite where there is none
@@ -88,7 +89,9 @@ func New(bands []*pyro.Band, a Assume) (*Estimator, error) {
 	e.compileLimits()
 	e.deficient = e.findDeficiency()
 	e.fast = e.compileFast()
-	return e, nil
+	var err error
+	e.shape, err = e.compileShape()
+	return e, err
 }
 
 func (e *Estimator) defaults() error {

@@ -82,6 +82,8 @@ func (r *Result) String() string {
 		}
 	case state == Bounded && iv.HighOpen:
 		s = fmt.Sprintf("at least %.4g K (%s)", float64(iv.Low), oneSided)
+	case state == Bounded && !iv.LowOpen:
+		s = fmt.Sprintf("between %.4g and %.4g K (%s)", float64(iv.Low), float64(iv.High), percent)
 	case state == Bounded:
 		s = fmt.Sprintf("at most %.4g K (%s)", float64(iv.High), oneSided)
 	case r.e.assume.Noise.unknown && r.dof <= 0:

@@ -14,7 +14,8 @@ type State int
 const (
 	// Undetermined: the interval is open on both sides.
 	Undetermined State = iota
-	// Bounded: the interval is closed on one side only.
+	// Bounded: the interval is closed on one side only (or on both with no best value
+	// inside, where the readings can't fix the temperature).
 	Bounded
 	// Determined: the interval at the stated probability closes on both sides inside the
 	// temperature range.
@@ -102,6 +103,9 @@ func (r *Result) State() State {
 	}
 	if !r.cold.open {
 		s++
+	}
+	if len(r.basins) == 0 {
+		s = min(s, Bounded)
 	}
 	return s
 }

@@ -33,10 +33,13 @@ func writeText(out io.Writer, e estimated, unit show.Unit) error {
 		}
 		fmt.Fprintf(&b, "  interval     %.1f to %.1f %v (%.4g %%)\n", unit.In(iv.Low), unit.In(iv.High), unit, percent)
 	case fit.Bounded:
-		if iv.HighOpen {
+		switch {
+		case iv.HighOpen:
 			fmt.Fprintf(&b, "  temperature  at least %.1f %v (%.4g %%)\n", unit.In(iv.Low), unit, oneSided)
-		} else {
+		case iv.LowOpen:
 			fmt.Fprintf(&b, "  temperature  at most %.1f %v (%.4g %%)\n", unit.In(iv.High), unit, oneSided)
+		default:
+			fmt.Fprintf(&b, "  temperature  between %.1f and %.1f %v (%.4g %%)\n", unit.In(iv.Low), unit.In(iv.High), unit, percent)
 		}
 	default:
 		fmt.Fprintf(&b, "  temperature  undetermined\n")

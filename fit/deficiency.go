@@ -4,6 +4,7 @@ import (
 	"errors"
 	"fmt"
 	"math"
+	"slices"
 	"strings"
 
 	"candent/fit/internal/lsq"
@@ -91,7 +92,7 @@ func (e *Estimator) deficiencyAt(β float64, ψ []float64) string {
 	if err != nil {
 		return err.Error()
 	}
-	solver.SetJacobian(rows)
+	solver.SetJacobian(slices.Concat(rows...))
 	var rank *lsq.RankError
 	if !errors.As(solver.Covariance(make([]float64, len(free)*len(free))), &rank) {
 		return ""

@@ -75,15 +75,15 @@ func (e *Estimator) EstimateTo(dst *Result, w *Work, r Readings) error {
 	return nil
 }
 
-// covariance fills cov from the expected curvature at (β, psi): of everything (from 0),
-// or of ψ alone (from 1). It refuses where a bound is active or H is singular.
+// covariance fills cov at (β, psi) by an orthogonal factorisation: of everything (from 0),
+// or of ψ alone (from 1). It refuses where a bound is active or a direction is not fixed.
 func (dst *Result) covariance(w *Work, β float64, from int) {
 	e := w.e
 	size := e.size()
 	dst.beta = β
 	dst.chi2 = w.evaluate(β, dst.psi, true)
 	dst.fitted = true
-	if dst.basins[0].atBound || !w.factor(from, size) {
+	if dst.basins[0].atBound {
 		return
 	}
 	scale := e.loss[1] / (e.loss[0] * e.loss[0])
@@ -93,21 +93,71 @@ func (dst *Result) covariance(w *Work, β float64, from int) {
 		}
 		scale *= dst.chi2 / float64(dst.dof)
 	}
-	clear(dst.cov)
-	n := size - from
-	for a := range n {
-		if from+a > 0 && from+a <= e.p && e.fixed[from+a-1] {
-			continue
-		}
-		x := w.step[:n]
-		clear(x)
-		x[a] = 1
-		w.backSolve(x, size)
-		for b := range n {
-			dst.cov[(from+a)*size+from+b] = scale * x[b]
+	w.weightedRows(β, from)
+	w.solver.SetJacobian(w.rows)
+	if w.solver.Covariance(dst.cov) != nil {
+		return
+	}
+	for a := range size {
+		held := a == 0 && from == 1 || a > 0 && a <= e.p && e.fixed[a-1]
+		for b := range size {
+			dst.cov[a*size+b] *= scale
+			if held {
+				dst.cov[a*size+b], dst.cov[b*size+a] = 0, 0
+			}
 		}
 	}
 	dst.hasCov = true
+}
+
+// weightedRows fills rows with the Jacobian of everything in units of σ: the readings at the
+// last evaluation, what is known of T, θ and η, and a unit row for each unknown that is held.
+func (w *Work) weightedRows(β float64, from int) {
+	e := w.e
+	size := e.size()
+	clear(w.rows)
+	next := 0
+	row := func() []float64 {
+		next += size
+		return w.rows[next-size : next]
+	}
+	for j := range e.n {
+		f := 1.0
+		if e.whiten == nil {
+			f = 1 / math.Sqrt(w.std[j]*w.std[j]+w.rel*w.rel*w.model[j]*w.model[j])
+		}
+		for a, v := range w.jac[j*size : (j+1)*size] {
+			row := w.rows[j*size:]
+			row[a] = f * v
+		}
+	}
+	next = e.n * size
+	if t := e.assume.Temperature; t.StdK > 0 {
+		row()[0] = -1 / (β * β * t.StdK)
+	}
+	for _, d := range e.data {
+		r := row()
+		for k, v := range d.row {
+			r[1+k] = v * d.weight
+		}
+	}
+	for k := range e.q {
+		row()[1+e.p+k] = 1
+	}
+	hold := func(a int) {
+		for i := a; i < len(w.rows); i += size {
+			w.rows[i] = 0
+		}
+		row()[a] = 1
+	}
+	if from == 1 {
+		hold(0)
+	}
+	for k, fixed := range e.fixed {
+		if fixed {
+			hold(1 + k)
+		}
+	}
 }
 
 // rescan asks the scan for all basins, far ones too, and keeps the lowest as it is.

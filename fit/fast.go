@@ -29,6 +29,7 @@ const (
 	wienEnough = 3.0   // least c₂β/λ at which the start may take Planck's term as known
 	fastSteps  = 25    // refining steps before the scan is asked
 	fastDone   = 2e-7  // of u: what may be left of the way to the lowest minimum
+	covDone    = 3e-6  // of u: the longest last step, since the covariance is that before it
 	roughly    = 1e-3  // of u: what may be left of the way to another
 	maxStep    = 0.02  // of β: a longer refining step is cut to this
 )
@@ -413,7 +414,7 @@ func (w *Work) refineFast(β, θ0, θ1, done float64) (basin, outcome) {
 		if w.newton == ([3]float64{}) {
 			rate = max(rate, 0.1) // Gauss–Newton shrinks its steps less evenly
 		}
-		if left := length * min(1, rate); newton && cut == 1 && (left <= done || math.Abs(step[0]) <= 1e-13*β) {
+		if left := length * min(1, rate); newton && cut == 1 && (length <= covDone || done != fastDone) && (left <= done || math.Abs(step[0]) <= 1e-13*β) {
 			cov, bent, ok := w.expectedCov()
 			if !ok || !e.within(θ0, θ1) {
 				return basin{}, failed

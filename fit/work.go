@@ -5,6 +5,7 @@ import (
 	"math"
 
 	"candent/emissivity"
+	"candent/fit/internal/lsq"
 )
 
 // Work is the scratch of one goroutine for one Estimator.
@@ -40,6 +41,9 @@ type Work struct {
 
 	grid []gridPoint
 
+	rows   []float64 // of the covariance
+	solver *lsq.Solver
+
 	// the fast path
 	groups               []group
 	inverse              []float64 // 1/variance
@@ -65,6 +69,12 @@ func (e *Estimator) NewWork() *Work {
 		active: make([]int, 0, e.p+1), activeLow: make([]bool, 0, e.p+1), schur: f((e.p + 1) * (e.p + 1)), multiply: f(e.p + 1), rowRoom: f(s),
 		grid: make([]gridPoint, gridSteps+1)}
 	w.coord = e.coord
+	count := max(e.n+1+len(e.data)+e.q+1+e.p, s)
+	w.rows = f(count * s)
+	var err error
+	if w.solver, err = lsq.New(count, s, lsq.Settings{}); err != nil {
+		panic("fit: NewWork: " + err.Error()) // more rows than columns by construction
+	}
 	if !e.lines {
 		w.coord, w.dcoord = f(e.n), f(e.n)
 		w.gauss = f(e.n * 6)

@@ -48,19 +48,21 @@ func (e *RankError) Error() string {
 
 // Solver holds the scratch for problems of n residuals and p parameters.
 type Solver struct {
-	n, p              int
-	set               Settings
-	r, trial          []float64 // residuals at theta and at a trial
-	jac               []float64 // Jacobian, scaled by columns, then its QR factors
-	scale             []float64 // column lengths
-	widest            []float64 // the longest each was on the path: what damping is measured by (Moré)
-	tau, work         []float64
-	qtr               []float64 // first p of −Qᵀr
-	upper             []float64 // R, p×p
-	damped, rhs, tau2 []float64 // the 2p×p system of one damping
-	step, next        []float64
-	Iterations        int     // of the last Minimise
-	SumSquares        float64 // Σr² at the last minimum
+	n, p                  int
+	set                   Settings
+	r, trial              []float64 // residuals at theta and at a trial
+	jac                   []float64 // Jacobian, scaled by columns, then its QR factors
+	scale                 []float64 // column lengths
+	widest                []float64 // the longest each was on the path: what damping is measured by (Moré)
+	tau, work             []float64
+	qtr                   []float64 // first p of −Qᵀr
+	upper                 []float64 // R, p×p
+	damped, rhs, tau2     []float64 // the 2p×p system of one damping
+	step, next            []float64
+	triangle, left, right []float64 // of the singular value decomposition
+	singular              []float64
+	Iterations            int     // of the last Minimise
+	SumSquares            float64 // Σr² at the last minimum
 }
 
 // New returns a Solver for n residuals and p parameters, n ≥ p ≥ 1.
@@ -77,7 +79,7 @@ func New(n, p int, set Settings) (*Solver, error) {
 	f := func(n int) []float64 { return make([]float64, n) }
 	return &Solver{n: n, p: p, set: set, r: f(n), trial: f(n), jac: f(n * p), scale: f(p), widest: f(p), tau: f(p),
 		work: f(64 * (n + p)), qtr: f(n), upper: f(p * p), damped: f(2 * p * p), rhs: f(2 * p), tau2: f(p),
-		step: f(p), next: f(p)}, nil
+		step: f(p), next: f(p), triangle: f(p * p), left: f(p * p), right: f(p * p), singular: f(p)}, nil
 }
 
 // polishing is the predicted relative decrease of Σr² below which a comparison of two
@@ -242,11 +244,9 @@ func (s *Solver) solve(damping float64) (predicted, length float64) {
 	return predicted, math.Sqrt(length)
 }
 
-// SetJacobian takes in a Jacobian, row by row, for Covariance without a minimum.
-func (s *Solver) SetJacobian(rows [][]float64) {
-	for i, row := range rows {
-		copy(s.jac[i*s.p:(i+1)*s.p], row)
-	}
+// SetJacobian takes in a Jacobian, n×p by rows, for Covariance without a minimum.
+func (s *Solver) SetJacobian(jac []float64) {
+	copy(s.jac, jac)
 	clear(s.r)
 	clear(s.widest)
 	s.factor()
@@ -260,12 +260,12 @@ const RankTolerance = 1e-12
 // variance, or refuses with a *RankError.
 func (s *Solver) Covariance(dst []float64) error {
 	p := s.p
-	u := blas64.General{Rows: p, Cols: p, Stride: p, Data: make([]float64, p*p)}
-	vt := blas64.General{Rows: p, Cols: p, Stride: p, Data: make([]float64, p*p)}
-	a := blas64.General{Rows: p, Cols: p, Stride: p, Data: append([]float64(nil), s.upper...)}
-	sv := make([]float64, p)
-	work := make([]float64, 10*p+64)
-	if !lapack64.Gesvd(lapack.SVDAll, lapack.SVDAll, a, u, vt, sv, work, len(work)) {
+	copy(s.triangle, s.upper)
+	u := blas64.General{Rows: p, Cols: p, Stride: p, Data: s.left}
+	vt := blas64.General{Rows: p, Cols: p, Stride: p, Data: s.right}
+	a := blas64.General{Rows: p, Cols: p, Stride: p, Data: s.triangle}
+	sv := s.singular
+	if !lapack64.Gesvd(lapack.SVDAll, lapack.SVDAll, a, u, vt, sv, s.work, len(s.work)) {
 		return fmt.Errorf("lsq: the singular values did not converge")
 	}
 	rank := 0

@@ -12,6 +12,9 @@ import "math"
 // result is a normal float64.
 func Fraction(λ Wavelength, t Temperature) float64 {
 	x, low := exponent(float64(λ), float64(t))
+	if x > 800 {
+		return 0
+	}
 	if x < seriesBelow {
 		return 1 - lowerIntegral(x)
 	}

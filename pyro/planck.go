@@ -12,11 +12,20 @@ const (
 // λT and the quotient are carried with their rounding errors (FMA).
 func exponent(λ, t float64) (high, low float64) {
 	p := λ * t
+	if !(p > tiny && p < huge) { // no use for its rounding error
+		return c2High / λ / t, 0
+	}
 	pe := math.FMA(λ, t, -p)
 	high = c2High / p
 	low = (math.FMA(-high, p, c2High) - high*pe + c2Low) / p
 	return high, low
 }
+
+// Between tiny and huge a number's rounding error is a normal number too.
+const (
+	tiny = 1e-250
+	huge = 1e250
+)
 
 // wienRegion is the x beyond which the 1 in exp(x) − 1 is below 2⁻⁵⁷ of it.
 const wienRegion = 40
@@ -36,13 +45,38 @@ func Radiance(λ Wavelength, t Temperature) float64 {
 	l := float64(λ)
 	l2 := l * l
 	scale := C1L / (l2 * l2 * l)
+	if !(scale > tiny && scale < huge) {
+		return radianceInLogs(l, float64(t))
+	}
 	high, low := exponent(l, float64(t))
-	if high > wienRegion {
+	switch {
+	case high > 1e4: // e⁻ˣ outdoes any λ⁻⁵
+		return 0
+	case high > wienRegion:
 		half := math.Exp(-high / 2)
 		return scale * half * half * (1 - low)
+	case high < 1e-300:
+		return radianceInLogs(l, float64(t))
 	}
 	e := math.Expm1(high)
 	return scale / (e + low*(e+1))
+}
+
+// radianceInLogs is Radiance where λ⁻⁵ or x leaves the floating-point range; it gives the
+// limits 0 and +Inf, and about ten digits between.
+func radianceInLogs(λ, t float64) float64 {
+	logX := math.Log(C2) - math.Log(λ) - math.Log(t)
+	if logX > math.Log(1e4) {
+		return 0
+	}
+	logDenominator := logX // of eˣ − 1 for small x
+	if logX > -18 {
+		logDenominator = math.Log(math.Expm1(math.Exp(logX)))
+		if math.IsInf(logDenominator, 1) {
+			logDenominator = math.Exp(logX)
+		}
+	}
+	return math.Exp(math.Log(C1L) - 5*math.Log(λ) - logDenominator)
 }
 
 // RadianceSlope returns ∂L/∂T in W m⁻² sr⁻¹ m⁻¹ K⁻¹,
@@ -51,16 +85,20 @@ func Radiance(λ Wavelength, t Temperature) float64 {
 //
 // to the same bound as Radiance.
 func RadianceSlope(λ Wavelength, t Temperature) float64 {
-	if t == 0 {
+	l := Radiance(λ, t)
+	if l == 0 {
 		return 0
 	}
-	return Radiance(λ, t) / float64(t) * LogSlope(λ, t)
+	return l / float64(t) * LogSlope(λ, t)
 }
 
 // LogSlope returns ∂lnL/∂lnT = x/(1 − e⁻ˣ) with x = c₂/λT: the number of per
 // cent by which the radiance grows when the temperature grows by one per cent.
 func LogSlope(λ Wavelength, t Temperature) float64 {
-	x := C2 / (float64(λ) * float64(t))
+	x, _ := exponent(float64(λ), float64(t))
+	if x < 1e-17 {
+		return 1
+	}
 	return x / -math.Expm1(-x)
 }
 
@@ -76,10 +114,17 @@ func RadianceTemperature(λ Wavelength, radiance float64) Temperature {
 	l2 := l * l
 	scale := C1L / (l2 * l2 * l)
 	x := math.Log1p(scale / radiance)
-	if math.IsInf(x, 1) && radiance > 0 { // the quotient overflows, its logarithm does not
-		x = math.Log(scale) - math.Log(radiance)
+	if radiance > 0 && !(x > tiny && x < huge) { // the quotient leaves the range, its logarithm does not
+		logY := math.Log(C1L) - 5*math.Log(l) - math.Log(radiance)
+		if logY < -18 { // Rayleigh–Jeans: x = y
+			return Temperature(math.Exp(math.Log(C2) - math.Log(l) - logY))
+		}
+		x = math.Log1p(math.Exp(logY))
+		if math.IsInf(x, 1) {
+			x = logY
+		}
 	}
-	return Temperature(C2 / (l * x))
+	return Temperature(C2 / l / x)
 }
 
 // PeakWavelength returns the wavelength at which the spectral radiance per

@@ -90,7 +90,7 @@ func TestCoverage(t *testing.T) {
 				s := truth{f.name, f.family, f.θ(rng, 0.25+0.2*rng.Float64(), -0.6+0.5*rng.Float64())}
 				y := s.signals(bands, 1.1*µm, T)
 				reading := fit.Readings{Signal: make([]float64, n)}
-				noise := fit.Noise{}
+				var noise fit.Noise
 				switch {
 				case k.noise != nil:
 					noise = k.noise(rel, y)

@@ -16,10 +16,13 @@ import (
 //
 //	CANDENT_STUDY=whole go test ./fit -run Coverage -v -timeout 60m
 //
-// and 300 otherwise.
+// and 300 otherwise, 60 with -short.
 func draws() int {
 	if os.Getenv("CANDENT_STUDY") == "whole" {
 		return 2000
+	}
+	if testing.Short() {
+		return 60
 	}
 	return 300
 }

@@ -194,7 +194,7 @@ func (r *Result) Report() string {
 func (r *Result) MarshalJSON() ([]byte, error) {
 	type number = *float64
 	num := func(v float64) number {
-		v = tenDigits(v)
+		v = sevenDigits(v)
 		return &v
 	}
 	out := struct {
@@ -232,7 +232,7 @@ func (r *Result) MarshalJSON() ([]byte, error) {
 		out.Probability = num(iv.Probability)
 	}
 	for _, b := range r.Basins() {
-		out.Basins = append(out.Basins, tenDigits(float64(b)))
+		out.Basins = append(out.Basins, sevenDigits(float64(b)))
 	}
 	var value, std []float64
 	for i, band := range r.e.bands {
@@ -240,10 +240,10 @@ func (r *Result) MarshalJSON() ([]byte, error) {
 		if !ok {
 			continue
 		}
-		out.Wavelength = append(out.Wavelength, tenDigits(band.Mean().Micrometres()))
-		value = append(value, tenDigits(v))
+		out.Wavelength = append(out.Wavelength, sevenDigits(band.Mean().Micrometres()))
+		value = append(value, sevenDigits(v))
 		if hasStd {
-			std = append(std, tenDigits(u))
+			std = append(std, sevenDigits(u))
 		}
 	}
 	out.Emissivity, out.EmissStd = value, std
@@ -256,9 +256,9 @@ func (r *Result) MarshalJSON() ([]byte, error) {
 	return json.Marshal(out)
 }
 
-// tenDigits rounds to ten significant digits, more than any reading has.
-func tenDigits(v float64) float64 {
-	r, err := strconv.ParseFloat(strconv.FormatFloat(v, 'g', 10, 64), 64)
+// sevenDigits rounds to seven significant digits, more than any reading has.
+func sevenDigits(v float64) float64 {
+	r, err := strconv.ParseFloat(strconv.FormatFloat(v, 'g', 7, 64), 64)
 	if err != nil {
 		return v
 	}

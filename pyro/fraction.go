@@ -18,6 +18,9 @@ func Fraction(λ Wavelength, t Temperature) float64 {
 	if x < seriesBelow {
 		return 1 - lowerIntegral(x)
 	}
+	if x > 1600 {
+		return 0 // far below the least float64
+	}
 	// e⁻ⁿˣ is powers of e⁻ˣ; the compensation matters only in the first.
 	half := math.Exp(-x / 2)
 	e := half * half * (1 - low)
@@ -38,7 +41,7 @@ func Fraction(λ Wavelength, t Temperature) float64 {
 // digits: their difference is then integrated, not subtracted.
 func FractionBetween(lo, hi Wavelength, t Temperature) float64 {
 	const close = 1.1 // ratio of wavelengths below which the integral is used
-	if lo > 0 && hi > 0 && hi/lo < close && lo/hi < close {
+	if lo > 0 && hi > 0 && hi/lo < close && lo/hi < close && ordinary(float64(lo), float64(t)) {
 		// Gauss–Legendre over ln λ, eight points; dF = π L λ d(ln λ) / σT⁴.
 		mid, half := float64(lo), math.Log1p(float64((hi-lo)/lo))/2
 		mid *= math.Exp(half)

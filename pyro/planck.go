@@ -12,7 +12,7 @@ const (
 // λT and the quotient are carried with their rounding errors (FMA).
 func exponent(λ, t float64) (high, low float64) {
 	p := λ * t
-	if !(p > tiny && p < huge) { // no use for its rounding error
+	if !(p >= 1e-250 && p <= 1e250) { // its rounding errors would leave the normal float64
 		return c2High / λ / t, 0
 	}
 	pe := math.FMA(λ, t, -p)
@@ -20,12 +20,6 @@ func exponent(λ, t float64) (high, low float64) {
 	low = (math.FMA(-high, p, c2High) - high*pe + c2Low) / p
 	return high, low
 }
-
-// Between tiny and huge a number's rounding error is a normal number too.
-const (
-	tiny = 1e-250
-	huge = 1e250
-)
 
 // wienRegion is the x beyond which the 1 in exp(x) − 1 is below 2⁻⁵⁷ of it.
 const wienRegion = 40
@@ -37,46 +31,25 @@ const wienRegion = 40
 // M. Planck 1900. λ > 0 and T > 0; the limit 0 is returned for T = 0.
 // For λT from 1e-5 to 10 m K the error is at most 8 ULP wherever the result is a
 // normal float64: the exponent is compensated, and exp(−x) enters as the square
-// of exp(−x/2) so that it cannot flush to zero before the result does.
+// of exp(−x/2) so that it cannot flush to zero before the result does. Any other
+// positive finite argument gives a number to 1e-11 or the limit 0 or +Inf, never NaN.
 func Radiance(λ Wavelength, t Temperature) float64 {
+	l := float64(λ)
 	if t == 0 {
 		return 0
 	}
-	l := float64(λ)
+	if !ordinary(l, float64(t)) {
+		return math.Exp(logRadiance(l, float64(t)))
+	}
 	l2 := l * l
 	scale := C1L / (l2 * l2 * l)
-	if !(scale > tiny && scale < huge) {
-		return radianceInLogs(l, float64(t))
-	}
 	high, low := exponent(l, float64(t))
-	switch {
-	case high > 1e4: // e⁻ˣ outdoes any λ⁻⁵
-		return 0
-	case high > wienRegion:
+	if high > wienRegion {
 		half := math.Exp(-high / 2)
 		return scale * half * half * (1 - low)
-	case high < 1e-300:
-		return radianceInLogs(l, float64(t))
 	}
 	e := math.Expm1(high)
 	return scale / (e + low*(e+1))
-}
-
-// radianceInLogs is Radiance where λ⁻⁵ or x leaves the floating-point range; it gives the
-// limits 0 and +Inf, and about ten digits between.
-func radianceInLogs(λ, t float64) float64 {
-	logX := math.Log(C2) - math.Log(λ) - math.Log(t)
-	if logX > math.Log(1e4) {
-		return 0
-	}
-	logDenominator := logX // of eˣ − 1 for small x
-	if logX > -18 {
-		logDenominator = math.Log(math.Expm1(math.Exp(logX)))
-		if math.IsInf(logDenominator, 1) {
-			logDenominator = math.Exp(logX)
-		}
-	}
-	return math.Exp(math.Log(C1L) - 5*math.Log(λ) - logDenominator)
 }
 
 // RadianceSlope returns ∂L/∂T in W m⁻² sr⁻¹ m⁻¹ K⁻¹,
@@ -85,19 +58,21 @@ func radianceInLogs(λ, t float64) float64 {
 //
 // to the same bound as Radiance.
 func RadianceSlope(λ Wavelength, t Temperature) float64 {
-	l := Radiance(λ, t)
-	if l == 0 {
+	if t == 0 {
 		return 0
 	}
-	return l / float64(t) * LogSlope(λ, t)
+	if !ordinary(float64(λ), float64(t)) {
+		return math.Exp(logRadianceSlope(float64(λ), float64(t)))
+	}
+	return Radiance(λ, t) / float64(t) * LogSlope(λ, t)
 }
 
 // LogSlope returns ∂lnL/∂lnT = x/(1 − e⁻ˣ) with x = c₂/λT: the number of per
 // cent by which the radiance grows when the temperature grows by one per cent.
 func LogSlope(λ Wavelength, t Temperature) float64 {
-	x, _ := exponent(float64(λ), float64(t))
-	if x < 1e-17 {
-		return 1
+	x := C2 / (float64(λ) * float64(t))
+	if x == 0 {
+		return 1 // the Rayleigh–Jeans limit
 	}
 	return x / -math.Expm1(-x)
 }
@@ -113,18 +88,14 @@ func RadianceTemperature(λ Wavelength, radiance float64) Temperature {
 	l := float64(λ)
 	l2 := l * l
 	scale := C1L / (l2 * l2 * l)
-	x := math.Log1p(scale / radiance)
-	if radiance > 0 && !(x > tiny && x < huge) { // the quotient leaves the range, its logarithm does not
-		logY := math.Log(C1L) - 5*math.Log(l) - math.Log(radiance)
-		if logY < -18 { // Rayleigh–Jeans: x = y
-			return Temperature(math.Exp(math.Log(C2) - math.Log(l) - logY))
-		}
-		x = math.Log1p(math.Exp(logY))
-		if math.IsInf(x, 1) {
-			x = logY
-		}
+	if !ordinary(l, 1) || scale/radiance < 1e-300 {
+		return temperatureOfLog(l, ln(radiance))
 	}
-	return Temperature(C2 / l / x)
+	x := math.Log1p(scale / radiance)
+	if math.IsInf(x, 1) && radiance > 0 { // the quotient overflows, its logarithm does not
+		x = math.Log(scale) - ln(radiance)
+	}
+	return Temperature(C2 / (l * x))
 }
 
 // PeakWavelength returns the wavelength at which the spectral radiance per

@@ -11,8 +11,8 @@ func ordinary(λ, t float64) bool {
 	return λ >= 1e-50 && λ <= 1e50 && t >= 1e-30 && t <= 1e30
 }
 
-// ln returns the natural logarithm, also of a subnormal number, for which math.Log  on
-// amd64 returns (Go 1.26) about that of the least normal number.
+// ln returns the natural logarithm, also of a subnormal number, for which math.Log
+// on amd64 (Go 1.26) returns about that of the least normal one.
 func ln(v float64) float64 {
 	if v > 0 && v < 0x1p-1022 {
 		return math.Log(v*0x1p52) - 52*math.Ln2

@@ -12,14 +12,11 @@ import "math"
 // result is a normal float64.
 func Fraction(λ Wavelength, t Temperature) float64 {
 	x, low := exponent(float64(λ), float64(t))
-	if x > 800 {
+	if x > 1600 { // e⁻ˣ flushes to zero before, and x³ may overflow
 		return 0
 	}
 	if x < seriesBelow {
 		return 1 - lowerIntegral(x)
-	}
-	if x > 1600 {
-		return 0 // far below the least float64
 	}
 	// e⁻ⁿˣ is powers of e⁻ˣ; the compensation matters only in the first.
 	half := math.Exp(-x / 2)

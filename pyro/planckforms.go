@@ -79,21 +79,15 @@ func PhotonRadianceTemperature(λ Wavelength, radiance float64) Temperature {
 // WienRadiance returns Wien's approximation c₁L λ⁻⁵ exp(−c₂/λT), for those who
 // must compare with values computed from it. It is low by WienError.
 func WienRadiance(λ Wavelength, t Temperature) float64 {
-	x, _ := exponent(float64(λ), float64(t))
-	if x < 1e-17 { // Planck's radiance may be infinite there, Wien's is not
-		l := float64(λ)
-		return C1L / l / l / l / l / l
+	l := float64(λ)
+	if t != 0 && !ordinary(l, float64(t)) {
+		return math.Exp(ln(C1L) - 5*ln(l) - C2/l/float64(t))
 	}
-	l := Radiance(λ, t)
-	if l == 0 {
-		return 0
-	}
-	return l * -math.Expm1(-x)
+	return Radiance(λ, t) * -math.Expm1(-C2/(l*float64(t)))
 }
 
 // WienError returns the relative error of Wien's approximation,
 // WienRadiance/Radiance − 1 = −exp(−c₂/λT).
 func WienError(λ Wavelength, t Temperature) float64 {
-	x, _ := exponent(float64(λ), float64(t))
-	return -math.Exp(-x)
+	return -math.Exp(-C2 / (float64(λ) * float64(t)))
 }

@@ -1,6 +1,7 @@
 package pyro_test
 
 import (
+	"fmt"
 	"math"
 	"testing"
 
@@ -40,6 +41,33 @@ func TestRadiancePerWavenumberIntegratesToExitance(t *testing.T) {
 		sum += pyro.RadiancePerWavenumber(pyro.Wavelength(l), T) / l * step // dν̃ = ν̃ du
 	}
 	near(t, "exitance", math.Pi*sum, 5.670374419184429454e-8*T*T*T*T, 1e-10)
+}
+
+func TestFormsOfRadianceHaveSlopeAndInverse(t *testing.T) {
+	// Slope: T·∂lnL/∂T is the same in every unit, n = x/(1 − e⁻ˣ), four decimals from the
+	// formula. Inverse: u(lnL) of 4 ULP is worth 4 ULP/n ≤ 4 ULP of T; 8 for both ways.
+	for _, r := range []struct{ t, um, n float64 }{
+		{300, 0.65, 73.7834}, {300, 10, 4.8359}, {1000, 1, 14.3878}, {1000, 10, 1.8862}, {3000, 1, 4.8359},
+	} {
+		λ, T := pyro.Wavelength(r.um)*pyro.Micrometre, pyro.Temperature(r.t)
+		for name, f := range map[string]struct {
+			radiance, slope func(pyro.Wavelength, pyro.Temperature) float64
+			inverse         func(pyro.Wavelength, float64) pyro.Temperature
+		}{
+			"per wavelength": {pyro.Radiance, pyro.RadianceSlope, pyro.RadianceTemperature},
+			"per wavenumber": {pyro.RadiancePerWavenumber, pyro.RadiancePerWavenumberSlope, pyro.RadiancePerWavenumberTemperature},
+			"photons":        {pyro.PhotonRadiance, pyro.PhotonRadianceSlope, pyro.PhotonRadianceTemperature},
+		} {
+			s := f.radiance(λ, T)
+			if n := f.slope(λ, T) * r.t / s; math.Abs(n-r.n) > 0.5e-4 {
+				t.Errorf("%s, %v, %v: n = %.6f, want %.4f", name, λ, T, n, r.n)
+			}
+			near(t, fmt.Sprintf("%s, %v: inverse at %v", name, λ, T), f.inverse(λ, s).Kelvin(), r.t, 8*0x1p-52)
+			if f.inverse(λ, 0) != 0 || !math.IsNaN(float64(f.inverse(λ, -1))) {
+				t.Errorf("%s: no radiance is not 0 K, or a negative one is a temperature", name)
+			}
+		}
+	}
 }
 
 func TestWien(t *testing.T) {

@@ -1,0 +1,71 @@
+package pyro_test
+
+import (
+	"math"
+	"math/rand/v2"
+	"testing"
+	"time"
+
+	"candent/pyro"
+)
+
+var benchSink float64
+
+// expNanoseconds times math.Exp as an independent-throughput loop in the same run: the
+// unit in which the benchmarks state their cost.
+func expNanoseconds() float64 {
+	x, y := make([]float64, 100), make([]float64, 100)
+	for i := range x {
+		x[i] = -20 * rand.Float64()
+	}
+	best := math.Inf(1)
+	for range 20 {
+		const rounds = 500
+		start := time.Now()
+		for range rounds {
+			for i := range x {
+				y[i] = math.Exp(x[i])
+			}
+		}
+		best = math.Min(best, float64(time.Since(start).Nanoseconds())/(rounds*100))
+	}
+	benchSink += y[7]
+	return best
+}
+
+func BenchmarkPairTemperature(b *testing.B) {
+	flat := func(lo, hi float64) *pyro.Band {
+		band, err := pyro.FlatTop(pyro.Wavelength(lo)*µm, pyro.Wavelength(hi)*µm)
+		if err != nil {
+			b.Fatal(err)
+		}
+		return band
+	}
+	wide, err := pyro.NewPair(flat(0.7, 0.8), flat(0.85, 0.95), 900, 2800)
+	if err != nil {
+		b.Fatal(err)
+	}
+	for _, c := range []struct {
+		name string
+		pair *pyro.Pair
+	}{{"bands=lines", linePair(b, 0.75, 0.9, 900, 2800)}, {"bands=wide", wide}} {
+		b.Run(c.name, func(b *testing.B) {
+			ratios := make([]float64, 64)
+			for i := range ratios {
+				ratios[i] = 0.985 * c.pair.Ratio(pyro.Temperature(950+1800*rand.Float64()))
+			}
+			unit := expNanoseconds()
+			b.ReportAllocs()
+			i := 0
+			for b.Loop() {
+				t, err := c.pair.Temperature(ratios[i%64], 0.985)
+				if err != nil {
+					b.Fatal(err)
+				}
+				benchSink += float64(t) + c.pair.Uncertainty(t, 0.002, 0.01)
+				i++
+			}
+			b.ReportMetric(float64(b.Elapsed().Nanoseconds())/float64(b.N)/unit, "x/exp")
+		})
+	}
+}

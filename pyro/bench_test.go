@@ -58,11 +58,11 @@ func BenchmarkPairTemperature(b *testing.B) {
 			b.ReportAllocs()
 			i := 0
 			for b.Loop() {
-				t, err := c.pair.Temperature(ratios[i%64], 0.985)
+				t, u, err := c.pair.Estimate(ratios[i%64], 0.985, 0.002, 0.01)
 				if err != nil {
 					b.Fatal(err)
 				}
-				benchSink += float64(t) + c.pair.Uncertainty(t, 0.002, 0.01)
+				benchSink += float64(t) + u
 				i++
 			}
 			b.ReportMetric(float64(b.Elapsed().Nanoseconds())/float64(b.N)/unit, "x/exp")

@@ -65,7 +65,38 @@ func TestPairIsExactWithoutNoise(t *testing.T) {
 				t.Fatalf("%s at %v: %v", name, T, err)
 			}
 			near(t, fmt.Sprintf("%s at %v", name, T), float64(got), float64(T), 1e-12)
+			again, u, err := p.Estimate(0.985*p.Ratio(T), 0.985, 0.003, 0.004)
+			if err != nil || again != got {
+				t.Errorf("%s at %v: Estimate gives %v, %v", name, T, again, err)
+			}
+			near(t, fmt.Sprintf("%s at %v: u", name, T), u, p.Uncertainty(T, 0.005, 0), 1e-9)
 		}
+	}
+}
+
+func TestRatiosAtTheEndsOfTheRange(t *testing.T) {
+	p := linePair(t, 0.75, 0.9, 900, 2800)
+	for _, T := range []pyro.Temperature{900, 2800} {
+		got, err := p.Temperature(p.Ratio(T), 1)
+		if err != nil {
+			t.Errorf("%v: %v", T, err)
+		}
+		near(t, "end of the range", float64(got), float64(T), 1e-12)
+	}
+	if lo, hi := p.Range(); math.Abs(float64(lo-900)) > 1e-9 || math.Abs(float64(hi-2800)) > 1e-9 {
+		t.Errorf("range %v to %v", lo, hi)
+	}
+}
+
+func TestPairEstimateAllocatesNothing(t *testing.T) {
+	p := linePair(t, 0.75, 0.9, 900, 2800)
+	ratio := p.Ratio(1500)
+	if n := testing.AllocsPerRun(100, func() {
+		if _, _, err := p.Estimate(ratio, 1, 0.01, 0.01); err != nil {
+			t.Fatal(err)
+		}
+	}); n != 0 {
+		t.Errorf("%g allocations", n)
 	}
 }
 

@@ -187,6 +187,22 @@ func (b *Band) Radiance(t Temperature) float64 {
 	return sum
 }
 
+// longest returns the longest wavelength of the quadrature, m.
+func (b *Band) longest() float64 { return b.nodes[len(b.nodes)-1] }
+
+// reducedRadiance returns S(T)·(λr⁵/c₁L)·exp(c₂v/λr) with v = 1/T and λr the longest
+// wavelength: what is left of a band's radiance beside that of a line in Wien's limit.
+func (b *Band) reducedRadiance(v float64) float64 {
+	r := b.longest()
+	sum := 0.0
+	for i, λ := range b.nodes {
+		q := r / λ
+		q2 := q * q
+		sum += b.weights[i] * q2 * q2 * q * math.Exp(-C2*v*(r-λ)/(r*λ)) / -math.Expm1(-C2*v/λ)
+	}
+	return sum
+}
+
 // RadianceSlope returns dS/dT in W m⁻² sr⁻¹ m⁻¹ K⁻¹.
 func (b *Band) RadianceSlope(t Temperature) float64 {
 	sum := 0.0
@@ -256,6 +272,43 @@ func (b *Band) EffectiveWavelength(t Temperature) Wavelength {
 		}
 	}
 	return Wavelength(C2 / (x * float64(t)))
+}
+
+// EffectiveWavelengthBetween returns the mean effective wavelength between two
+// temperatures: the one at which a line's radiances have the same ratio as the band's,
+// L(λ,t1)/L(λ,t2) = S(t1)/S(t2). For equal temperatures it is EffectiveWavelength.
+func (b *Band) EffectiveWavelengthBetween(t1, t2 Temperature) Wavelength {
+	if len(b.nodes) == 1 || t1 == t2 {
+		return b.EffectiveWavelength(t1)
+	}
+	want := math.Log(b.Radiance(t1) / b.Radiance(t2))
+	at := func(λ float64) float64 {
+		return math.Log(Radiance(Wavelength(λ), t1)/Radiance(Wavelength(λ), t2)) - want
+	}
+	// ln(L₁/L₂) is monotonic in λ: regula falsi (Illinois) between the band's edges.
+	lo, hi := b.nodes[0], b.nodes[len(b.nodes)-1]
+	flo, fhi, side := at(lo), at(hi), 0
+	for range 100 {
+		λ := (lo*fhi - hi*flo) / (fhi - flo)
+		f := at(λ)
+		if f == 0 || hi-lo <= 1e-15*hi || λ <= lo || λ >= hi {
+			return Wavelength(λ)
+		}
+		if (f > 0) == (flo > 0) {
+			lo, flo = λ, f
+			if side < 0 {
+				fhi /= 2
+			}
+			side = -1
+		} else {
+			hi, fhi = λ, f
+			if side > 0 {
+				flo /= 2
+			}
+			side = 1
+		}
+	}
+	return Wavelength((lo + hi) / 2)
 }
 
 // Check refuses a temperature at which more than 1 % of the signal would come from

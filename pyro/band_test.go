@@ -117,6 +117,21 @@ func TestBandInverseSlopeAndEffectiveWavelength(t *testing.T) {
 	}
 }
 
+func TestEffectiveWavelengthBetweenTwoTemperatures(t *testing.T) {
+	for name, b := range bands(t) {
+		for _, T := range []pyro.Temperature{700, 1400, 3000} {
+			λ := b.EffectiveWavelengthBetween(T, 1.5*T)
+			near(t, name+": ratio of radiances", pyro.Radiance(λ, 1.5*T)/pyro.Radiance(λ, T), b.Radiance(1.5*T)/b.Radiance(T), 1e-12)
+			// It lies between the limiting ones, and tends to them.
+			a, z := b.EffectiveWavelength(T), b.EffectiveWavelength(1.5*T)
+			if λ < min(a, z)*(1-1e-12) || λ > max(a, z)*(1+1e-12) {
+				t.Errorf("%s: %v is not between %v and %v", name, λ, a, z)
+			}
+			near(t, name+": its limit", float64(b.EffectiveWavelengthBetween(T, T*(1+1e-6))), float64(a), 1e-6)
+		}
+	}
+}
+
 func TestOpenTableIsRefusedWhereItsEndMatters(t *testing.T) {
 	b, err := pyro.Tabulated([]pyro.Wavelength{0.7 * µm, 0.9 * µm, 1.0 * µm}, []float64{0.2, 1, 0.01}, pyro.PerWatt)
 	if err != nil {

@@ -16,19 +16,30 @@ import (
 //
 //	CANDENT_STUDY=whole go test ./fit -run Coverage -v -timeout 60m
 //
-// and 300 otherwise, 60 with -short.
+// and 300 otherwise, 100 with -short.
 func draws() int {
 	if os.Getenv("CANDENT_STUDY") == "whole" {
 		return 2000
 	}
 	if testing.Short() {
-		return 60
+		return 100
 	}
 	return 300
 }
 
 // binomial is the standard error of a share p of n.
 func binomial(p float64, n int) float64 { return math.Sqrt(p * (1 - p) / float64(n)) }
+
+// allowed is how many standard errors a share may be off: three in the whole study. The
+// short ones make the same 58 comparisons with wider and, at 100 draws, skewed
+// distributions (a 95 % share misses by 3.0 standard errors once in 150), so they allow 4.5:
+// they are there to catch what breaks, the whole study to measure.
+func allowed() float64 {
+	if draws() == 2000 {
+		return 3
+	}
+	return 4.5
+}
 
 // TestCoverage: intervals of 68.3 % and 95 % hold the truth within three binomial standard
 // errors, for each family and kind of noise.
@@ -145,8 +156,8 @@ func TestCoverage(t *testing.T) {
 			}
 			for pi, p := range []float64{0.683, 0.95} {
 				got := float64(inside[pi]) / float64(total)
-				if math.Abs(got-p) > 3*binomial(p, total) {
-					t.Errorf("%s, noise %s: the %.3g %% interval holds %.1f %% of %d truths, allowed ± %.1f", f.name, k.name, 100*p, 100*got, total, 300*binomial(p, total))
+				if math.Abs(got-p) > allowed()*binomial(p, total) {
+					t.Errorf("%s, noise %s: the %.3g %% interval holds %.1f %% of %d truths, allowed ± %.1f", f.name, k.name, 100*p, 100*got, total, 100*allowed()*binomial(p, total))
 				}
 			}
 			t.Logf("%-12s %-28s 68.3 %%: %5.1f   95 %%: %5.1f   of %d", f.name, k.name, 100*float64(inside[0])/float64(total), 100*float64(inside[1])/float64(total), total)
@@ -205,7 +216,7 @@ func TestCoverageAcrossDegeneracy(t *testing.T) {
 		median = off[len(off)/2]
 	}
 	t.Logf("95 %% interval holds %.1f %% of %d; another basin than the lowest is nearer to the truth in %d (then off by a median of %.0f K); T ± u is given in %d", 100*got, total, wrong, median, alone)
-	if got < 0.95-3*binomial(0.95, total) {
+	if got < 0.95-allowed()*binomial(0.95, total) {
 		t.Errorf("the 95 %% interval holds %.1f %% of %d", 100*got, total)
 	}
 }

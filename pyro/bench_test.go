@@ -54,18 +54,53 @@ func BenchmarkPairTemperature(b *testing.B) {
 			for i := range ratios {
 				ratios[i] = 0.985 * c.pair.Ratio(pyro.Temperature(950+1800*rand.Float64()))
 			}
-			unit := expNanoseconds()
-			b.ReportAllocs()
-			i := 0
-			for b.Loop() {
-				t, u, err := c.pair.Estimate(ratios[i%64], 0.985, 0.002, 0.01)
-				if err != nil {
-					b.Fatal(err)
-				}
-				benchSink += float64(t) + u
-				i++
+			for _, call := range []struct {
+				name     string
+				estimate func(ratio float64) (pyro.Temperature, float64, error)
+			}{
+				{"calls=one", func(ratio float64) (pyro.Temperature, float64, error) {
+					return c.pair.Estimate(ratio, 0.985, 0.002, 0.01)
+				}},
+				{"calls=two", func(ratio float64) (pyro.Temperature, float64, error) {
+					t, err := c.pair.Temperature(ratio, 0.985)
+					return t, c.pair.Uncertainty(t, 0.002, 0.01), err
+				}},
+			} {
+				b.Run(call.name, func(b *testing.B) {
+					unit := expNanoseconds()
+					b.ReportAllocs()
+					i := 0
+					for b.Loop() {
+						t, u, err := call.estimate(ratios[i%64])
+						if err != nil {
+							b.Fatal(err)
+						}
+						benchSink += float64(t) + u
+						i++
+					}
+					b.ReportMetric(float64(b.Elapsed().Nanoseconds())/float64(b.N)/unit, "x/exp")
+				})
 			}
-			b.ReportMetric(float64(b.Elapsed().Nanoseconds())/float64(b.N)/unit, "x/exp")
 		})
+	}
+}
+
+// BenchmarkNewPair compiles; a pair is compiled once.
+func BenchmarkNewPair(b *testing.B) {
+	short, err := pyro.FlatTop(0.7*µm, 0.8*µm)
+	if err != nil {
+		b.Fatal(err)
+	}
+	long, err := pyro.FlatTop(0.85*µm, 0.95*µm)
+	if err != nil {
+		b.Fatal(err)
+	}
+	b.ReportAllocs()
+	for b.Loop() {
+		p, err := pyro.NewPair(short, long, 900, 2800)
+		if err != nil {
+			b.Fatal(err)
+		}
+		benchSink += p.LogSlope(1500)
 	}
 }

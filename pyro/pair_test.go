@@ -156,6 +156,25 @@ func TestRatioWithTwoTemperaturesGivesBoth(t *testing.T) {
 	if p.Monotonic() {
 		t.Fatal("the example needs a ratio that turns round")
 	}
+	branches := p.Branches()
+	if len(branches) != 2 || branches[0].Lo != 500 || branches[1].Hi != 5500 || branches[0].Hi != branches[1].Lo {
+		t.Fatalf("branches %v", branches)
+	}
+	for _, b := range branches {
+		part, err := pyro.NewPair(ring, line, b.Lo, b.Hi)
+		if err != nil || !part.Monotonic() {
+			t.Fatalf("branch %v: %v", b, err)
+		}
+		for _, T := range []pyro.Temperature{b.Lo, (b.Lo + b.Hi) / 2, b.Hi} {
+			got, err := part.Temperature(p.Ratio(T), 1)
+			// At a turn the ratio moves by the square of T: 1e-14 of it are 1e-6 of T.
+			if err != nil || math.Abs(float64(got/T)-1) > 1e-6 {
+				t.Errorf("branch %v at %v: %v, %v", b, T, got, err)
+			}
+		}
+		near(t, "ratio at its low end", b.RatioLo, p.Ratio(b.Lo), 1e-12)
+		near(t, "ratio at its high end", b.RatioHi, p.Ratio(b.Hi), 1e-12)
+	}
 	_, err = p.Temperature(p.Ratio(4500), 1)
 	var two *pyro.AmbiguousRatio
 	if !errors.As(err, &two) || len(two.Temperatures) != 2 {
@@ -163,6 +182,58 @@ func TestRatioWithTwoTemperaturesGivesBoth(t *testing.T) {
 	}
 	near(t, "one of the two", float64(two.Temperatures[1]), 4500, 1e-12)
 	near(t, "the other has the same ratio", p.Ratio(two.Temperatures[0]), p.Ratio(4500), 1e-12)
+}
+
+// TestPairAgainstQuadratureOverItsWholeRange: what the compiled table may miss of the direct
+// quadrature is 1e-12 of T wherever the ratio says something; over the whole range of bands,
+// where lines 1 % apart or far apart, wide, or wide apart read it.
+func TestPairAgainstQuadratureOverItsWholeRange(t *testing.T) {
+	const bound = 1e-12
+	flat := func(lo, hi float64) *pyro.Band {
+		b, err := pyro.FlatTop(pyro.Wavelength(lo)*µm, pyro.Wavelength(hi)*µm)
+		if err != nil {
+			t.Fatal(err)
+		}
+		return b
+	}
+	line := func(um float64) *pyro.Band {
+		b, err := pyro.Line(pyro.Wavelength(um) * µm)
+		if err != nil {
+			t.Fatal(err)
+		}
+		return b
+	}
+	for name, r := range map[string]struct {
+		short, long *pyro.Band
+		lo, hi      pyro.Temperature
+	}{
+		"lines":               {line(0.75), line(0.9), 200, 6000},
+		"close lines":         {line(0.9), line(0.91), 300, 4000},
+		"lines far apart":     {line(0.5), line(12), 250, 6000},
+		"infrared lines":      {line(8), line(12), 200, 6000},
+		"wide":                {flat(0.7, 0.8), flat(0.85, 0.95), 200, 6000},
+		"wide infrared":       {flat(3, 5), flat(8, 14), 200, 6000},
+		"detectors in layers": {flat(0.7, 1.0), flat(1.0, 1.7), 300, 3500},
+	} {
+		p, err := pyro.NewPair(r.short, r.long, r.lo, r.hi)
+		if err != nil {
+			t.Fatalf("%s: %v", name, err)
+		}
+		worst := 0.0
+		for k := range 401 {
+			T := r.lo * pyro.Temperature(math.Pow(float64(r.hi/r.lo), float64(k)/400))
+			T = min(T, r.hi)
+			got, err := p.Temperature(p.Ratio(T), 1)
+			if err != nil {
+				t.Fatalf("%s at %v: %v", name, T, err)
+			}
+			worst = max(worst, math.Abs(float64(got/T)-1))
+			near(t, fmt.Sprintf("%s: slope at %v", name, T), p.LogSlope(T), r.short.LogSlope(T)-r.long.LogSlope(T), 1e-9)
+		}
+		if t.Logf("%s: at most %.1e of T apart", name, worst); worst > bound {
+			t.Errorf("%s: %.2g of T apart from the quadrature, allowed %.0e", name, worst, bound)
+		}
+	}
 }
 
 func ExamplePair_Temperature() {

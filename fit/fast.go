@@ -139,15 +139,21 @@ func (w *Work) grouped() bool {
 
 // addPlanck moves Planck's term, taken at β, to the data: y + ln(1 − e^(−kβ)).
 func (w *Work) addPlanck(β float64) bool {
-	for i := range w.groups[:w.e.fast.groups] {
-		p := &w.groups[i]
-		x := p.k * β
-		if x < wienEnough {
+	groups := w.groups[:w.e.fast.groups]
+	var room [maxGroups]float64
+	term := room[:len(groups)]
+	for i := range groups {
+		if term[i] = -groups[i].k * β; term[i] > -wienEnough {
 			return false
 		}
-		p.y += p.planck
-		p.planck = -math.Log1p(-math.Exp(-x))
-		p.y -= p.planck
+	}
+	expTo(term, term)
+	for i := range groups {
+		p := &groups[i]
+		x := term[i] // ln(1 − x) by its series, x below 0.05
+		next := -x * (1 + x*(1.0/2+x*(1.0/3+x*(1.0/4+x*(1.0/5+x/6)))))
+		p.y += p.planck - next
+		p.planck = next
 	}
 	return true
 }
@@ -210,35 +216,64 @@ func (w *Work) logStart() (β, θ0, θ1 float64, ok bool) {
 	return β, θ0, θ1, true
 }
 
-// point is the groups' χ² at one relative slope t, with the β and ln a that make it.
-type point struct{ t, chi2, beta, level float64 }
+// point is the groups' χ² at one relative slope t, with the β and ln a that make it, and
+// Newton's step of t from there with the decrease of χ² that it promises.
+type point struct{ t, chi2, beta, level, step, gain float64 }
 
 // profile fits β and ln a to the groups at the relative slope t.
 func (w *Work) profile(t float64) point {
 	groups := w.groups[:w.e.fast.groups]
-	var log [maxGroups]float64
-	for g, p := range groups {
-		log[g] = 1 + t*p.x
+	var room, tilt [maxGroups]float64
+	rest, jac := room[:len(groups)], tilt[:len(groups)]
+	for g := range groups {
+		jac[g] = 1 + t*groups[g].x
 	}
-	logTo(log[:len(groups)], log[:len(groups)])
-	var s, k, r float64
-	for g, p := range groups {
-		log[g] = p.y - log[g]
+	logTo(rest, jac)
+	var s, k, r, j float64
+	for g := range groups {
+		p := &groups[g]
+		jac[g] = p.x / jac[g] // ∂ ln(1 + t·x)/∂t
+		rest[g] = p.y - rest[g]
 		s += p.weight
 		k += p.weight * p.k
-		r += p.weight * log[g]
+		r += p.weight * rest[g]
+		j += p.weight * jac[g]
 	}
-	k /= s
-	r /= s
-	var kk, kr, rr float64
-	for g, p := range groups {
-		dk, dr := p.k-k, log[g]-r
-		kk += p.weight * dk * dk
-		kr += p.weight * dk * dr
-		rr += p.weight * dr * dr
+	inverse := 1 / s
+	k, r, j = k*inverse, r*inverse, j*inverse
+	var kk, kr, kj, rr, rj, jj, bend, bendK float64
+	for g := range groups {
+		weight := groups[g].weight
+		dk, dr, dj := groups[g].k-k, rest[g]-r, jac[g]-j
+		a, q := weight*dr, jac[g]*jac[g]
+		kk += weight * dk * dk
+		kr += a * dk
+		kj += weight * dk * dj
+		rr += a * dr
+		rj += a * dj
+		jj += weight * dj * dj
+		bend += a * q
+		bendK += weight * dk * q
 	}
-	β := -kr / kk
-	return point{t, rr - kr*kr/kk, β, r + k*β}
+	b := kr / kk // the residuals less b·dk are what no β takes up
+	slope := rj - b*kj
+	curvature := jj - kj*kj/kk
+	if c := curvature + bend - b*bendK; c > 0.3*curvature {
+		curvature = c
+	}
+	return point{t: t, chi2: rr - b*kr, beta: -b, level: r - k*b, step: slope / curvature, gain: slope * slope / curvature}
+}
+
+// descend takes a point to the groups' minimum by Newton's steps in t.
+func (w *Work) descend(p point) point {
+	for range 6 {
+		if p.gain < 0.01 {
+			return p
+		}
+		t := p.t + max(-0.3, min(0.3, p.step))
+		p = w.profile(max(-slopeEnd, min(slopeEnd, t)))
+	}
+	return p
 }
 
 // linearBasins finds the minima over the relative slope t, and refines them.
@@ -252,17 +287,7 @@ func (w *Work) linearBasins(dst []basin) (list []basin, ok bool) {
 	if !(grey.beta > e.hottest && grey.beta < e.coldest) || !w.addPlanck(grey.beta) {
 		return dst, false
 	}
-	if e.n <= maxGroups {
-		// The groups are the channels: start them where their groups would be started.
-		if list, ok := w.mirrorPair(dst, w.profile(0)); ok {
-			return list, true
-		}
-	}
-	first, near := w.groupStart(w.profile(0))
-	if !near {
-		return dst, false
-	}
-	return w.mirrorPair(dst, first)
+	return w.mirrorPair(dst, w.descend(w.profile(0)))
 }
 
 // mirrorPair refines a start and looks for the minimum that mirrors it.
@@ -280,16 +305,12 @@ func (w *Work) mirrorPair(dst []basin, first point) (list []basin, ok bool) {
 	t := found.theta[1] * f.half / (found.theta[0] + found.theta[1]*f.mid)
 	ξ := f.half / (f.mid - e.family.Coordinate(0))
 	start := w.profile(max(-mirrorEnd, min(mirrorEnd, 2*ξ-t)))
-	at, two := start, true
-	if e.n > maxGroups {
-		at, two = w.groupStart(start)
-		if two && at.chi2 > w.profile(t).chi2+far {
-			return append(dst, found), true
-		}
-		two = two && math.Abs(at.t-t) > 1e-3
+	at := w.descend(start)
+	if at.chi2 > first.chi2+far {
+		return append(dst, found), true
 	}
-	var other basin
-	if got = failed; two {
+	other, got := basin{}, failed
+	if math.Abs(at.t-t) > 1e-3 {
 		other, got = w.refineLinear(at, roughly)
 	}
 	switch {
@@ -316,62 +337,6 @@ func (w *Work) refineLinear(p point, done float64) (basin, outcome) {
 	ε := math.Exp(p.level)
 	θ1 := ε * p.t / f.half
 	return w.refineFast(p.beta, ε-θ1*f.mid, θ1, done)
-}
-
-// groupStart takes a start to the minimum of the groups alone, in the logarithm:
-// y = −kβ − ln(1 − e^(−kβ)) + ln ε + ln(1 + t·x).
-func (w *Work) groupStart(p point) (point, bool) {
-	β, lnε, t := p.beta, p.level, p.t
-	var rest, tilt, log [maxGroups]float64
-	groups := w.groups[:w.e.fast.groups]
-	for range 8 {
-		for i, p := range groups {
-			rest[i] = -p.k * β
-		}
-		expTo(rest[:len(groups)], rest[:len(groups)])
-		for i, p := range groups {
-			rest[i] = 1 - rest[i]
-			tilt[i] = 1 + t*p.x
-			log[i] = rest[i] / tilt[i]
-		}
-		logTo(log[:len(groups)], log[:len(groups)])
-		var grad [3]float64
-		var hess [6]float64
-		chi2 := 0.0
-		for i, p := range groups {
-			r := p.y + p.planck + p.k*β - lnε + log[i]
-			jβ, jt := -p.k/rest[i], p.x/tilt[i]
-			u := p.weight * r
-			chi2 += u * r
-			grad[0] += u * jβ
-			grad[1] += u
-			grad[2] += u * jt
-			hess[0] += p.weight * jβ * jβ
-			hess[1] += p.weight * jβ
-			hess[2] += p.weight * jβ * jt
-			hess[3] += p.weight
-			hess[4] += p.weight * jt
-			// Newton's curvature: ∂²/∂t² is −jt², ∂²/∂β² is k²e⁻ˣ/(1−e⁻ˣ)².
-			hess[0] -= u * jβ * jβ * (1 - rest[i])
-			hess[5] += (p.weight + u) * jt * jt
-		}
-		w.jointGrad, w.jointHess = grad, hess
-		if !w.jointSolve() {
-			return p, false
-		}
-		step := w.jointStep
-		cut := min(1, 0.25/math.Abs(step[2])) // of t, which is of order 1
-		β += cut * step[0]
-		lnε += cut * step[1]
-		t += cut * step[2]
-		if !(math.Abs(t) < 1) || !(β > 0) {
-			return p, false
-		}
-		if w.decrement < 0.02 {
-			return point{t, chi2 - w.decrement, β, lnε}, true
-		}
-	}
-	return p, false
 }
 
 // outcome is how a refinement ended.

@@ -21,10 +21,11 @@ import (
 
 const (
 	maxGroups  = 12
+	tooClose   = 0.05  // |t − ξ| below which the scan is asked
 	mirrorEnd  = 0.93  // the largest |t| at which the second minimum is looked for
 	slopeEnd   = 0.995 // the largest |t|: ε at one edge is then 0.5 % of the mean
 	clearlySet = 5     // a signal of so many σ has a logarithm to speak of
-	farAbove   = 25.0  // Δχ² of a start beyond which a second minimum is not followed
+	farAbove   = 18.0  // Δχ² of a start beyond which a second minimum is not followed
 	fastLimit  = 12.0  // Δχ² of an interval beyond which it asks the scan for its basins
 	wienEnough = 3.0   // least c₂β/λ at which the start may take Planck's term as known
 	fastSteps  = 25    // refining steps before the scan is asked
@@ -42,6 +43,7 @@ type fastPlan struct {
 	x      []float64 // scaled coordinate −1 … 1 of the channels (linear family)
 	mid    float64   // d = mid + half·x
 	half   float64
+	ξ      float64 // t of ε ∝ λ
 }
 
 // compileFast returns the plan, or nil where the assumptions are not plain.
@@ -68,6 +70,7 @@ func (e *Estimator) compileFast() *fastPlan {
 	})
 	lo, hi := e.coord[order[0]], e.coord[order[e.n-1]]
 	f.mid, f.half = (lo+hi)/2, (hi-lo)/2
+	f.ξ = f.half / (f.mid - e.family.Coordinate(0))
 	for i, j := range order {
 		g := i * f.groups / e.n
 		f.of[j] = g
@@ -217,7 +220,7 @@ func (w *Work) logStart() (β, θ0, θ1 float64, ok bool) {
 }
 
 // point is the groups' χ² at one relative slope t, with the β and ln a that make it, and
-// Newton's step of t from there with the decrease of χ² that it promises.
+// the Gauss–Newton step of t from there with the decrease of χ² that it promises.
 type point struct{ t, chi2, beta, level, step, gain float64 }
 
 // profile fits β and ln a to the groups at the relative slope t.
@@ -241,37 +244,35 @@ func (w *Work) profile(t float64) point {
 	}
 	inverse := 1 / s
 	k, r, j = k*inverse, r*inverse, j*inverse
-	var kk, kr, kj, rr, rj, jj, bend, bendK float64
+	var kk, kr, kj, rr, rj, jj float64
 	for g := range groups {
 		weight := groups[g].weight
 		dk, dr, dj := groups[g].k-k, rest[g]-r, jac[g]-j
-		a, q := weight*dr, jac[g]*jac[g]
+		a := weight * dr
 		kk += weight * dk * dk
 		kr += a * dk
 		kj += weight * dk * dj
 		rr += a * dr
 		rj += a * dj
 		jj += weight * dj * dj
-		bend += a * q
-		bendK += weight * dk * q
 	}
 	b := kr / kk // the residuals less b·dk are what no β takes up
 	slope := rj - b*kj
 	curvature := jj - kj*kj/kk
-	if c := curvature + bend - b*bendK; c > 0.3*curvature {
-		curvature = c
-	}
 	return point{t: t, chi2: rr - b*kr, beta: -b, level: r - k*b, step: slope / curvature, gain: slope * slope / curvature}
 }
 
-// descend takes a point to the groups' minimum by Newton's steps in t.
+// descend takes a point to the groups' minimum by Gauss–Newton steps in (t − ξ)², in which
+// the residuals are linear to leading order (see linearBasins).
 func (w *Work) descend(p point) point {
+	ξ := w.e.fast.ξ
 	for range 6 {
 		if p.gain < 0.01 {
 			return p
 		}
-		t := p.t + max(-0.3, min(0.3, p.step))
-		p = w.profile(max(-slopeEnd, min(slopeEnd, t)))
+		c := p.t - ξ
+		square := max(c*c+2*c*p.step, 0.05*c*c) // it stays on its side of ξ
+		p = w.profile(max(-slopeEnd, min(slopeEnd, ξ+math.Copysign(math.Sqrt(square), c))))
 	}
 	return p
 }
@@ -303,8 +304,10 @@ func (w *Work) mirrorPair(dst []basin, first point) (list []basin, ok bool) {
 		far *= found.chi2 / float64(e.n-e.p-1)
 	}
 	t := found.theta[1] * f.half / (found.theta[0] + found.theta[1]*f.mid)
-	ξ := f.half / (f.mid - e.family.Coordinate(0))
-	start := w.profile(max(-mirrorEnd, min(mirrorEnd, 2*ξ-t)))
+	if math.Abs(t-f.ξ) < tooClose {
+		return dst, false // the two minima are about to merge: let the scan decide
+	}
+	start := w.profile(max(-mirrorEnd, min(mirrorEnd, 2*f.ξ-t)))
 	at := w.descend(start)
 	if at.chi2 > first.chi2+far {
 		return append(dst, found), true

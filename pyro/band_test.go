@@ -127,7 +127,12 @@ func TestEffectiveWavelengthBetweenTwoTemperatures(t *testing.T) {
 			if λ < min(a, z)*(1-1e-12) || λ > max(a, z)*(1+1e-12) {
 				t.Errorf("%s: %v is not between %v and %v", name, λ, a, z)
 			}
-			near(t, name+": its limit", float64(b.EffectiveWavelengthBetween(T, T*(1+1e-6))), float64(a), 1e-6)
+			near(t, name+": swapped", float64(b.EffectiveWavelengthBetween(1.5*T, T)), float64(λ), 1e-12)
+			// The switch to the limit at 1e-6 makes no step beyond the stated error.
+			middle := float64(b.EffectiveWavelength(T * (1 + 1e-6)))
+			near(t, name+": above the switch", float64(b.EffectiveWavelengthBetween(T, T*(1+2e-6))), middle, 1e-9)
+			near(t, name+": below the switch", float64(b.EffectiveWavelengthBetween(T, T*(1+0.9e-6))), float64(b.EffectiveWavelength(T*(1+0.45e-6))), 1e-9)
+			near(t, name+": its limit", float64(b.EffectiveWavelengthBetween(T, T)), float64(a), 1e-15)
 		}
 	}
 }

@@ -45,56 +45,97 @@ func TestSensitivityToWavelength(t *testing.T) {
 	}
 }
 
-func TestSensitivityToEmissivityRatio(t *testing.T) {
-	// 0.01·ΛT²/c₂ (Wien), three decimals printed; Wien's law is right to 1e-5 for the first two.
-	for _, r := range []struct{ short, long, t, want, allowed float64 }{
-		{0.7, 0.9, 1000, 2.189, 0.6e-3}, {0.7, 0.9, 1500, 4.926, 0.6e-3}, {0.95, 1.05, 1000, 6.933, 0.6e-3}, {1.55, 1.65, 1000, 17.776, 0.02},
+func TestSensitivityOfABandToWavelength(t *testing.T) {
+	// Re-estimation with a band assumed ± h off, all of its responsivity moved.
+	const T, h = pyro.Temperature(1300), 1e-5
+	for _, f := range []func(shift pyro.Wavelength) (*pyro.Band, error){
+		func(d pyro.Wavelength) (*pyro.Band, error) { return pyro.FlatTop(0.7*µm+d, 1.1*µm+d) },
+		func(d pyro.Wavelength) (*pyro.Band, error) { return pyro.FlatTop(8*µm+d, 14*µm+d) },
+		func(d pyro.Wavelength) (*pyro.Band, error) { return pyro.Gaussian(0.9*µm+d, 0.02*µm, 0.03*µm) },
 	} {
-		p := linePair(t, r.short, r.long, 500, 3000)
-		if got := -0.01 * p.SensitivityToEmissivityRatio(pyro.Temperature(r.t)); math.Abs(got-r.want) > r.allowed {
-			t.Errorf("1 %% of emissivity ratio at %g/%g µm, %g K is worth %.4f K, want %.3f", r.short, r.long, r.t, got, r.want)
+		at := func(shift pyro.Wavelength) *pyro.Band {
+			b, err := f(shift)
+			if err != nil {
+				t.Fatal(err)
+			}
+			return b
 		}
+		b := at(0)
+		d := h * b.Mean()
+		s := b.Radiance(T)
+		want := float64(at(d).RadianceTemperature(s)-at(-d).RadianceTemperature(s)) / float64(2*d)
+		near(t, fmt.Sprintf("∂T/∂λ of a band at %v", b.Mean()), b.SensitivityToWavelength(T), want, 1e-6)
 	}
-	// Re-estimation.
-	p := linePair(t, 0.75, 0.9, 900, 2800)
-	ratio := 0.98 * p.Ratio(1500)
-	a, err := p.Temperature(ratio, 0.98*(1+1e-4))
+	line, err := pyro.Line(3.9 * µm)
 	if err != nil {
 		t.Fatal(err)
 	}
-	b, err := p.Temperature(ratio, 0.98*(1-1e-4))
-	if err != nil {
-		t.Fatal(err)
-	}
-	near(t, "∂T/∂lnε_r", p.SensitivityToEmissivityRatio(1500), float64(a-b)/2e-4, 1e-6)
+	near(t, "∂T/∂λ of a line", line.SensitivityToWavelength(T), pyro.SensitivityToWavelength(3.9*µm, T), 1e-14)
 }
 
-func TestLowerBoundAndWhatBreaksIt(t *testing.T) {
-	var bands []*pyro.Band
-	var alone, walls, std []float64
-	const T, ε = 1300, 0.5
-	for _, um := range []float64{0.65, 0.9, 1.6, 3.9} {
-		b, err := pyro.Line(pyro.Wavelength(um) * µm)
+func TestSensitivityToWavelengthChangesSignAtThePeak(t *testing.T) {
+	const T = 1300
+	peak := pyro.PeakWavelength(T)
+	if pyro.SensitivityToWavelength(0.99*peak, T) >= 0 || pyro.SensitivityToWavelength(1.01*peak, T) <= 0 {
+		t.Error("no change from − to + at the peak")
+	}
+	// At 0.65 µm, 1300 K: n = 17.027, (5/n − 1)·T/λ = −1.41 K/nm, by hand.
+	if got := 1e-9 * pyro.SensitivityToWavelength(0.65*µm, T); math.Abs(got+1.41) > 0.5e-2 {
+		t.Errorf("1 nm at 0.65 µm, 1300 K is worth %.4f K, want −1.41", got)
+	}
+}
+
+func TestSensitivitiesOfAPair(t *testing.T) {
+	// Re-estimation with one band assumed ± h off, and with ratios ± h off.
+	const T, h = pyro.Temperature(1500), 1e-5
+	p := linePair(t, 0.75, 0.9, 900, 2800)
+	temperature := func(p *pyro.Pair, ratio, e float64) float64 {
+		got, err := p.Temperature(ratio, e)
 		if err != nil {
 			t.Fatal(err)
 		}
-		bands = append(bands, b)
-		alone = append(alone, ε*b.Radiance(T))
-		walls = append(walls, ε*b.Radiance(T)+(1-ε)*b.Radiance(1500))
-		std = append(std, 0.005*ε*b.Radiance(T))
+		return float64(got)
 	}
-	low, ok := pyro.LowerBound(bands, alone, std, 2, true)
-	// The shortest band is nearest to T: its radiance temperature less 1 % of radiance.
-	want := float64(bands[0].RadianceTemperature(alone[0])) - 0.01*pyro.SensitivityToRadiance(0.65*µm, bands[0].RadianceTemperature(alone[0]))
-	if !ok || low >= T || math.Abs(float64(low)-want) > 1e-6 {
-		t.Errorf("lower bound %v, %v; want %.4f K", low, ok, want)
+	q := p.Ratio(T)
+	short, long := p.SensitivityToWavelengths(T)
+	near(t, "∂T/∂λ_short", short, (temperature(linePair(t, 0.75*(1+h), 0.9, 900, 2800), q, 1)-
+		temperature(linePair(t, 0.75*(1-h), 0.9, 900, 2800), q, 1))/(2*h*0.75e-6), 1e-6)
+	near(t, "∂T/∂λ_long", long, (temperature(linePair(t, 0.75, 0.9*(1+h), 900, 2800), q, 1)-
+		temperature(linePair(t, 0.75, 0.9*(1-h), 900, 2800), q, 1))/(2*h*0.9e-6), 1e-6)
+	if short >= 0 || long <= 0 {
+		t.Errorf("in Wien's region the short one is negative, the long one positive: %g, %g K/m", short, long)
 	}
-	if _, ok := pyro.LowerBound(bands, alone, std, 2, false); ok {
-		t.Error("a bound although something may shine in")
+	near(t, "∂T/∂lnε_r", p.SensitivityToEmissivityRatio(T), (temperature(p, 0.98*q, 0.98*(1+h))-temperature(p, 0.98*q, 0.98*(1-h)))/(2*h), 1e-6)
+	near(t, "∂T/∂lnQ", p.SensitivityToRatio(T), (temperature(p, q*(1+h), 1)-temperature(p, q*(1-h), 1))/(2*h), 1e-6)
+}
+
+func TestEffectiveWavelengthsOfRatios(t *testing.T) {
+	// Λ = λ₁λ₂/(λ₂−λ₁) in µm, Wien's limit, from the formula, as printed. Planck's law adds to
+	// x = c₂/λT the factor 1/(1 − e⁻ˣ); at the lowest temperature of a band it is below 1e-7 here.
+	for _, r := range []struct{ short, long, want, printed float64 }{
+		{0.467, 0.665, 1.568460, 5e-7}, {0.5, 0.7, 1.75, 0}, {0.555, 0.665, 3.355227, 5e-7}, {0.7, 0.9, 3.15, 0}, {0.8, 1.0, 4.0, 0},
+		{0.85, 1.0, 5.666667, 5e-7}, {0.95, 1.05, 9.975, 0}, {0.9, 1.55, 2.146154, 5e-7}, {1.52, 1.64, 20.773333, 5e-7},
+		{1.55, 1.65, 25.575, 0}, {2.0, 2.2, 22.0, 0},
+	} {
+		p := linePair(t, r.short, r.long, 250, 3000)
+		got := p.EffectiveWavelength(250).Micrometres()
+		if math.Abs(got-r.want) > r.printed+1e-7*r.want {
+			t.Errorf("Λ of %g/%g µm = %.7f µm, want %.6f", r.short, r.long, got, r.want)
+		}
 	}
-	// Hot walls break it: the bound lies above the true temperature.
-	if low, _ := pyro.LowerBound(bands, walls, std, 2, true); low <= T {
-		t.Errorf("walls at 1500 K leave the bound at %v, below the true %d K", low, T)
+	// 1 % of emissivity ratio, 0.01·ΛT²/c₂ in K (Wien), three decimals printed. Planck's n₁ − n₂
+	// differs from x₁ − x₂ by x₁/(e^x₁−1) − x₂/(e^x₂−1).
+	for _, r := range []struct{ short, long, t, want float64 }{
+		{0.7, 0.9, 1000, 2.189}, {0.7, 0.9, 1500, 4.926}, {0.7, 0.9, 2000, 8.757},
+		{0.95, 1.05, 1000, 6.933}, {0.95, 1.05, 1500, 15.599}, {0.95, 1.05, 2000, 27.732},
+		{1.55, 1.65, 1000, 17.776}, {1.55, 1.65, 1500, 39.995}, {1.55, 1.65, 2000, 71.102},
+	} {
+		p := linePair(t, r.short, r.long, 500, 3000)
+		x1, x2 := 14387.7688/(r.short*r.t), 14387.7688/(r.long*r.t)
+		planck := (x1 - x2) / (x1 - x2 + x1/math.Expm1(x1) - x2/math.Expm1(x2))
+		if got := -0.01 * p.SensitivityToEmissivityRatio(pyro.Temperature(r.t)); math.Abs(got-r.want*planck) > 0.5e-3*planck+1e-6 {
+			t.Errorf("1 %% of emissivity ratio at %g/%g µm, %g K is worth %.4f K, want %.4f", r.short, r.long, r.t, got, r.want*planck)
+		}
 	}
 }
 

@@ -316,6 +316,11 @@ func (w *Work) extendFromGrid(dst *Result, limit float64) {
 
 // at returns χ² of the curve at 1/T = β.
 func (w *Work) at(β float64) float64 {
+	if w.e.fast != nil && w.e.linear() {
+		if chi2, ok := w.linearAt(β); ok {
+			return chi2
+		}
+	}
 	ψ := w.psi[:w.e.p+w.e.q]
 	w.startTheta(β, ψ)
 	chi2, _ := w.eliminate(β, ψ)
@@ -391,7 +396,9 @@ func (e *Estimator) Curve(r Readings, t []pyro.Temperature) (chi2, logDet []floa
 		if !(T >= e.assume.Range.Min && T <= e.assume.Range.Max) {
 			return nil, nil, fmt.Errorf("%w: temperature %d, %v, is outside %v to %v", ErrRange, i, T, e.assume.Range.Min, e.assume.Range.Max)
 		}
-		chi2[i] = w.at(1 / float64(T))
+		ψ := w.psi[:e.p+e.q]
+		w.startTheta(1/float64(T), ψ)
+		chi2[i], _ = w.eliminate(1/float64(T), ψ)
 		logDet[i] = math.NaN()
 		if w.factor(1, size) {
 			logDet[i] = 0

@@ -155,6 +155,36 @@ func (w *Work) jointLines(β, θ0, θ1 float64) {
 	w.jointHess = [6]float64{h00, h01, h02, h11, h12, h22}
 }
 
+// linearAt is χ² of the curve at 1/T = β for ε = θ₀ + θ₁d under given σ, in closed form; ok
+// is false where a bound of the emissivity is active, or the cancellation in χ² too deep.
+func (w *Work) linearAt(β float64) (chi2 float64, ok bool) {
+	w.blackbody(β)
+	e := w.e
+	var a11, a12, a22, b1, b2, c float64
+	coord, inverse, signal := w.coord[:e.n], w.inverse[:e.n], w.signal[:e.n]
+	for j, m := range w.black[:e.n] {
+		d, s := coord[j], signal[j]
+		q := inverse[j] * m
+		a := q * m
+		a11 += a
+		a12 += a * d
+		a22 += a * d * d
+		b1 += q * s
+		b2 += q * s * d
+		c += inverse[j] * s * s
+	}
+	θ0, θ1 := b1/a11, 0.0
+	if e.p == 2 {
+		det := a11*a22 - a12*a12
+		if !(det > 1e-9*a11*a22) {
+			return 0, false
+		}
+		θ0, θ1 = (a22*b1-a12*b2)/det, (a11*b2-a12*b1)/det
+	}
+	chi2 = c - θ0*b1 - θ1*b2
+	return chi2, e.within(θ0, θ1) && chi2 > 1e-7*c
+}
+
 // newtonSolve is jointSolve with Newton's curvature, where there is one. It fails where the
 // point is in no minimum's neighbourhood.
 func (w *Work) newtonSolve() bool {

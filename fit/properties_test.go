@@ -95,9 +95,9 @@ func TestFixedEqualsFreeAtItsValue(t *testing.T) {
 	bands, r := noisy(t, 12)
 	free := estimate(t, bands, fit.Assume{Emissivity: emissivity.Polynomial(1)}, r)
 	T, u := determined(t, free)
-	slope, _, ok := free.Parameter("slope_per_um")
-	if !ok {
-		t.Fatal("no slope")
+	slope, _, state := free.Parameter("slope_per_um")
+	if state != fit.ParameterDetermined {
+		t.Fatalf("slope %v", state)
 	}
 	fixed := estimate(t, bands, fit.Assume{Emissivity: emissivity.Polynomial(1).Fix("slope_per_um", slope)}, r)
 	T2, u2 := determined(t, fixed)
@@ -105,7 +105,7 @@ func TestFixedEqualsFreeAtItsValue(t *testing.T) {
 	if !(u2 < u) {
 		t.Errorf("u with the slope fixed: %g, free %g", u2, u)
 	}
-	if v, std, ok := fixed.Parameter("slope_per_um"); !ok || v != slope || std != 0 {
+	if v, std, state := fixed.Parameter("slope_per_um"); state != fit.ParameterFixed || v != slope || std != 0 {
 		t.Errorf("fixed slope %g ± %g", v, std)
 	}
 	// A prior: ever tighter it becomes the fixed parameter, ever wider the free one.

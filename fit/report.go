@@ -154,8 +154,13 @@ func (r *Result) Report() string {
 	}
 	if r.State() == Determined && r.fitted {
 		for _, name := range e.family.Parameters() {
-			if v, u, ok := r.Parameter(name); ok {
-				p("  %-22s %.6g ± %.2g", name, v, u)
+			switch v, u, state := r.Parameter(name); state {
+			case ParameterDetermined:
+				value, std := WithUncertainty(v, u)
+				p("  %-22s %s ± %s", name, value, std)
+			case ParameterUndetermined:
+			default:
+				p("  %-22s %.6g, %v", name, v, state)
 			}
 		}
 		p("")

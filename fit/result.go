@@ -206,23 +206,40 @@ func (r *Result) Model(i int) (reading, std float64, ok bool) {
 	return r.model[j], r.sigma[j], true
 }
 
-// Parameter returns the value and the standard uncertainty of a parameter of the family
-// by its name; ok is false where it is not determined, or where Uncertainty has none. A
-// fixed parameter has std 0.
-func (r *Result) Parameter(name string) (value, std float64, ok bool) {
-	if r.State() != Determined || !r.fitted {
-		return 0, 0, false
+// ParameterState says what a parameter's value rests on.
+type ParameterState int
+
+const (
+	ParameterUndetermined ParameterState = iota // there is no value
+	ParameterDetermined                         // a value with its standard uncertainty
+	ParameterFixed                              // held at its value
+	ParameterAtBound                            // a bound of the emissivity is active: a value, no uncertainty
+	ParameterAmbiguous                          // several basins: that of the lowest, no uncertainty
+)
+
+func (s ParameterState) String() string {
+	return [...]string{"undetermined", "determined", "fixed", "at bound", "ambiguous"}[s]
+}
+
+// Parameter returns the value and the standard uncertainty of a parameter of the family by
+// its name; the uncertainty is 0 and means nothing unless the state is ParameterDetermined.
+func (r *Result) Parameter(name string) (value, std float64, state ParameterState) {
+	k := slices.Index(r.e.family.Parameters(), name)
+	if k < 0 || r.State() != Determined || !r.fitted {
+		return 0, 0, ParameterUndetermined
 	}
-	size := r.e.size()
-	for k, n := range r.e.family.Parameters() {
-		if n == name {
-			if (!r.hasCov || r.inside() != 1) && !r.e.fixed[k] {
-				return 0, 0, false
-			}
-			return r.psi[k], math.Sqrt(max(r.cov[(1+k)*size+1+k], 0)), true
-		}
+	switch {
+	case r.e.fixed[k]:
+		return r.psi[k], 0, ParameterFixed
+	case r.basins[0].atBound:
+		return r.psi[k], 0, ParameterAtBound
+	case r.inside() != 1:
+		return r.psi[k], 0, ParameterAmbiguous
+	case !r.hasCov:
+		return 0, 0, ParameterUndetermined
 	}
-	return 0, 0, false
+	at := (1 + k) * (r.e.size() + 1)
+	return r.psi[k], math.Sqrt(max(r.cov[at], 0)), ParameterDetermined
 }
 
 // ChiSquared returns the minimum of χ² and its degrees of freedom.

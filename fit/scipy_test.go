@@ -101,9 +101,9 @@ func TestSecondOpinion(t *testing.T) {
 				alone++
 				cov = math.Abs(u/uT - 1)
 				for j, name := range f.family.Parameters() {
-					v, std, ok := r.Parameter(name)
-					if !ok {
-						t.Errorf("%s %d: no %s", f.name, i, name)
+					v, std, state := r.Parameter(name)
+					if state != fit.ParameterDetermined {
+						t.Errorf("%s %d: %s %v", f.name, i, name, state)
 						continue
 					}
 					uj := math.Sqrt(a.Covariance[j+1][j+1])

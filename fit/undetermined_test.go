@@ -64,7 +64,7 @@ func TestWhatReadingsCannotTell(t *testing.T) {
 				}
 			}
 			for _, name := range c.family.Parameters() {
-				if _, _, ok := res.Parameter(name); ok {
+				if _, _, state := res.Parameter(name); state != fit.ParameterUndetermined {
 					t.Errorf("%s, %v: a value of %s", c.name, noise, name)
 				}
 			}
@@ -125,7 +125,7 @@ func TestConstantsThatTradeOff(t *testing.T) {
 	if T, state := r.Temperature(); state != fit.Determined || T < 1499.9 || T > 1500.1 {
 		t.Errorf("%v %v", T, state)
 	}
-	if v, u, ok := r.Parameter("level"); !ok || u < 0.1*v {
+	if v, u, state := r.Parameter("level"); state != fit.ParameterDetermined || u < 0.1*v {
 		t.Errorf("level %g ± %g", v, u)
 	}
 }

@@ -205,16 +205,32 @@ func (b *Band) reducedRadiance(v float64) float64 {
 
 // RadianceSlope returns dS/dT in W m⁻² sr⁻¹ m⁻¹ K⁻¹.
 func (b *Band) RadianceSlope(t Temperature) float64 {
-	sum := 0.0
-	for i, λ := range b.nodes {
-		sum += b.weights[i] * RadianceSlope(Wavelength(λ), t)
+	s, n := b.radianceAndLogSlope(t)
+	if s == 0 {
+		return 0
 	}
-	return sum
+	return s / float64(t) * n
 }
 
 // LogSlope returns d lnS/d lnT.
 func (b *Band) LogSlope(t Temperature) float64 {
-	return float64(t) * b.RadianceSlope(t) / b.Radiance(t)
+	_, n := b.radianceAndLogSlope(t)
+	return n
+}
+
+// radianceAndLogSlope returns S(T) and d lnS/d lnT from one exponential a node.
+func (b *Band) radianceAndLogSlope(t Temperature) (s, n float64) {
+	sum := 0.0
+	for i, λ := range b.nodes {
+		l, n := radianceAndLogSlope(λ, float64(t))
+		l *= b.weights[i]
+		s += l
+		sum += l * n
+	}
+	if s == 0 { // too cold for a float64; the longest wavelength has the last of it
+		return 0, LogSlope(Wavelength(b.longest()), t)
+	}
+	return s, sum / s
 }
 
 // RadianceTemperature returns the temperature of the blackbody that gives the mean
@@ -227,9 +243,8 @@ func (b *Band) RadianceTemperature(s float64) Temperature {
 	}
 	// Newton on ln S against 1/T, which is close to a straight line.
 	for range 50 {
-		radiance := b.Radiance(t)
-		n := float64(t) * b.RadianceSlope(t) / radiance // d lnS/d lnT = −d lnS/d ln(1/T)
-		step := math.Log(s/radiance) / n                // of ln T
+		radiance, n := b.radianceAndLogSlope(t) // n = d lnS/d lnT = −d lnS/d ln(1/T)
+		step := math.Log(s/radiance) / n        // of ln T
 		t = Temperature(float64(t) / (1 - math.Max(math.Min(step, 0.5), -1)))
 		if math.Abs(step) < 1e-15 {
 			break

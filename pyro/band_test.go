@@ -117,6 +117,20 @@ func TestBandInverseSlopeAndEffectiveWavelength(t *testing.T) {
 	}
 }
 
+func TestBandTooColdForAnyRadiance(t *testing.T) {
+	for name, b := range bands(t) {
+		for _, T := range []pyro.Temperature{0, 1e-3} {
+			_, hi := b.Edges()
+			if s, slope := b.Radiance(T), b.RadianceSlope(T); s != 0 || slope != 0 {
+				t.Errorf("%s at %v: radiance %g, slope %g", name, T, s, slope)
+			}
+			if n := b.LogSlope(T); n != pyro.LogSlope(hi, T) {
+				t.Errorf("%s at %v: n = %g", name, T, n)
+			}
+		}
+	}
+}
+
 func TestEffectiveWavelengthBetweenTwoTemperatures(t *testing.T) {
 	for name, b := range bands(t) {
 		for _, T := range []pyro.Temperature{700, 1400, 3000} {

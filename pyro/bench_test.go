@@ -104,3 +104,38 @@ func BenchmarkNewPair(b *testing.B) {
 		benchSink += p.LogSlope(1500)
 	}
 }
+
+func BenchmarkPlanck(b *testing.B) {
+	for _, c := range []struct {
+		name string
+		f    func(pyro.Temperature) float64
+	}{
+		{"of=radiance", func(t pyro.Temperature) float64 { return pyro.Radiance(0.9*µm, t) }},
+		{"of=temperature", func(t pyro.Temperature) float64 { return float64(pyro.RadianceTemperature(0.9*µm, 1e6*float64(t))) }},
+	} {
+		b.Run(c.name, func(b *testing.B) {
+			unit := expNanoseconds()
+			b.ReportAllocs()
+			t := pyro.Temperature(900)
+			for b.Loop() {
+				benchSink += c.f(t)
+				t += 1e-6
+			}
+			b.ReportMetric(float64(b.Elapsed().Nanoseconds())/float64(b.N)/unit, "x/exp")
+		})
+	}
+}
+
+func BenchmarkBandRadianceTemperature(b *testing.B) {
+	band, err := pyro.FlatTop(0.7*µm, 1.1*µm)
+	if err != nil {
+		b.Fatal(err)
+	}
+	s := band.Radiance(1500)
+	unit := expNanoseconds()
+	b.ReportAllocs()
+	for b.Loop() {
+		benchSink += float64(band.RadianceTemperature(s))
+	}
+	b.ReportMetric(float64(b.Elapsed().Nanoseconds())/float64(b.N)/unit, "x/exp")
+}

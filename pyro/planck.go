@@ -41,15 +41,8 @@ func Radiance(λ Wavelength, t Temperature) float64 {
 	if !ordinary(l, float64(t)) {
 		return math.Exp(logRadiance(l, float64(t)))
 	}
-	l2 := l * l
-	scale := C1L / (l2 * l2 * l)
-	high, low := exponent(l, float64(t))
-	if high > wienRegion {
-		half := math.Exp(-high / 2)
-		return scale * half * half * (1 - low)
-	}
-	e := math.Expm1(high)
-	return scale / (e + low*(e+1))
+	radiance, _ := radianceAndLogSlope(l, float64(t))
+	return radiance
 }
 
 // RadianceSlope returns ∂L/∂T in W m⁻² sr⁻¹ m⁻¹ K⁻¹,
@@ -75,6 +68,20 @@ func LogSlope(λ Wavelength, t Temperature) float64 {
 		return 1 // the Rayleigh–Jeans limit
 	}
 	return x / -math.Expm1(-x)
+}
+
+// radianceAndLogSlope returns Radiance and LogSlope from one exponential, for ordinary
+// arguments.
+func radianceAndLogSlope(l, t float64) (radiance, n float64) {
+	l2 := l * l
+	scale := C1L / (l2 * l2 * l)
+	high, low := exponent(l, t)
+	if high > wienRegion {
+		half := math.Exp(-high / 2)
+		return scale * half * half * (1 - low), high
+	}
+	e := math.Expm1(high)
+	return scale / (e + low*(e+1)), high * (e + 1) / e
 }
 
 // RadianceTemperature returns the temperature of the blackbody whose spectral

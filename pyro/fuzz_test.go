@@ -74,25 +74,54 @@ func FuzzPlanck(f *testing.F) {
 	})
 }
 
-// FuzzPair: a ratio has a temperature in the range that gives it back, or a typed error.
+// FuzzPair: a ratio has a temperature in the range that gives it back, or a typed error; all
+// temperatures of an ambiguous ratio give it back.
 func FuzzPair(f *testing.F) {
+	wide, err := pyro.FlatTop(0.7*µm, 1.0*µm)
+	if err != nil {
+		f.Fatal(err)
+	}
+	long, err := pyro.FlatTop(1.0*µm, 1.7*µm)
+	if err != nil {
+		f.Fatal(err)
+	}
+	layers, err := pyro.NewPair(wide, long, 300, 3500)
+	if err != nil {
+		f.Fatal(err)
+	}
+	pairs := []*pyro.Pair{linePair(f, 0.75, 0.9, 900, 2800), layers, turningPair(f)}
 	f.Add(0.16, 0.985)
 	f.Add(1e-300, 1e300)
 	f.Add(5e-324, 1.0)
-	p := linePair(f, 0.75, 0.9, 900, 2800)
-	f.Add(p.Ratio(900), 1.0)
-	f.Add(p.Ratio(2800), 1.0)
-	f.Fuzz(func(t *testing.T, ratio, e float64) {
-		T, err := p.Temperature(ratio, e)
-		if err != nil {
-			var two *pyro.AmbiguousRatio
-			if !errors.Is(err, pyro.ErrPair) && !errors.Is(err, pyro.ErrRatioLow) && !errors.Is(err, pyro.ErrRatioHigh) && !errors.As(err, &two) {
-				t.Fatalf("untyped error %v", err)
-			}
-			return
+	for _, p := range pairs {
+		for _, b := range p.Branches() {
+			f.Add(b.RatioLo, 1.0)
+			f.Add(b.RatioHi, 1.0)
+			f.Add(p.Ratio(b.Lo), 1.0)
+			f.Add(p.Ratio((b.Lo+b.Hi)/2), 1.0)
 		}
-		if T < 900 || T > 2800 || math.Abs(p.Ratio(T)/(ratio/e)-1) > 1e-12 {
-			t.Fatalf("ratio %g, emissivity ratio %g: %v, which gives %g", ratio, e, T, e*p.Ratio(T))
+	}
+	f.Fuzz(func(t *testing.T, ratio, e float64) {
+		for i, p := range pairs {
+			T, err := p.Temperature(ratio, e)
+			found := []pyro.Temperature{T}
+			if err != nil {
+				var two *pyro.AmbiguousRatio
+				switch {
+				case errors.As(err, &two) && len(two.Temperatures) > 1:
+					found = two.Temperatures
+				case errors.Is(err, pyro.ErrPair), errors.Is(err, pyro.ErrRatioLow), errors.Is(err, pyro.ErrRatioHigh):
+					found = nil
+				default:
+					t.Fatalf("untyped error %v", err)
+				}
+			}
+			lo, hi := p.Range()
+			for _, T := range found {
+				if !(T >= lo && T <= hi) || !(math.Abs(p.Ratio(T)/(ratio/e)-1) <= 1e-12) {
+					t.Fatalf("pair %d, ratio %g, emissivity ratio %g: %v, which gives %g", i, ratio, e, T, e*p.Ratio(T))
+				}
+			}
 		}
 	})
 }

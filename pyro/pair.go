@@ -94,6 +94,12 @@ func (p *Pair) EffectiveWavelength(t Temperature) Wavelength {
 	return Wavelength(C2 / (float64(t) * p.LogSlope(t)))
 }
 
+// Short returns the band of shorter wavelength.
+func (p *Pair) Short() *Band { return p.short }
+
+// Long returns the band of longer wavelength.
+func (p *Pair) Long() *Band { return p.long }
+
 // Range returns the temperatures that the pair was compiled for.
 func (p *Pair) Range() (lo, hi Temperature) { return p.lo, p.hi }
 

@@ -4,6 +4,7 @@ import (
 	"errors"
 	"fmt"
 	"math"
+	"strings"
 	"testing"
 
 	"candent/pyro"
@@ -72,15 +73,56 @@ func TestRatiosAtTheEndsOfTheRange(t *testing.T) {
 	}
 }
 
-func TestPairEstimateAllocatesNothing(t *testing.T) {
-	p := linePair(t, 0.75, 0.9, 900, 2800)
-	ratio := p.Ratio(1500)
-	if n := testing.AllocsPerRun(100, func() {
-		if _, _, err := p.Estimate(ratio, 1, 0.01, 0.01); err != nil {
-			t.Fatal(err)
+func TestPairAllocatesNothing(t *testing.T) {
+	for name, p := range map[string]*pyro.Pair{"lines": linePair(t, 0.75, 0.9, 900, 2800), "turning": turningPair(t)} {
+		ratio := p.Ratio(2790)
+		if name == "turning" {
+			ratio = p.Ratio(505) // above that of its hot end
 		}
-	}); n != 0 {
-		t.Errorf("%g allocations", n)
+		if n := testing.AllocsPerRun(100, func() {
+			T, _, err := p.Estimate(ratio, 1, 0.01, 0.01)
+			again, err2 := p.Temperature(ratio, 1)
+			if err != nil || err2 != nil || T != again || !(p.Uncertainty(T, 0.01, 0.01) > 0) {
+				t.Fatal(name, T, again, err, err2)
+			}
+		}); n != 0 {
+			t.Errorf("%s: %g allocations", name, n)
+		}
+	}
+}
+
+// turningPair has a ratio that turns round at 1705 K: two blocks of responsivity around a
+// line. A wide band's light shifts past it.
+func turningPair(t testing.TB) *pyro.Pair {
+	t.Helper()
+	ring, err := pyro.Tabulated(
+		[]pyro.Wavelength{0.5 * µm, 0.501 * µm, 0.551 * µm, 0.552 * µm, 3.0 * µm, 3.001 * µm, 3.05 * µm, 3.051 * µm},
+		[]float64{0, 1, 1, 0, 0, 0.05, 0.05, 0}, pyro.PerWatt)
+	if err != nil {
+		t.Fatal(err)
+	}
+	line, err := pyro.Line(1.6 * µm)
+	if err != nil {
+		t.Fatal(err)
+	}
+	if ring.Mean() >= line.Mean() {
+		t.Fatal("the example needs the ring's mean below the line")
+	}
+	p, err := pyro.NewPair(ring, line, 500, 5500)
+	if err != nil {
+		t.Fatal(err)
+	}
+	return p
+}
+
+func TestBandsTooAlikeAreRefused(t *testing.T) {
+	all := lines(t, 0.9, 0.9*(1+1e-12))
+	if _, err := pyro.NewPair(all[0], all[1], 900, 2800); !errors.Is(err, pyro.ErrPair) {
+		t.Errorf("bands a part in 1e12 apart: %v", err)
+	}
+	all = lines(t, 0.05, 12)
+	if _, err := pyro.NewPair(all[0], all[1], 200, 2800); !errors.Is(err, pyro.ErrPair) || !strings.Contains(err.Error(), "raise the low end") {
+		t.Errorf("no radiance at 0.05 µm, 200 K: %v", err)
 	}
 }
 
@@ -108,25 +150,7 @@ func TestUnreachableRatiosSayWhy(t *testing.T) {
 }
 
 func TestRatioWithTwoTemperaturesGivesBoth(t *testing.T) {
-	// A wide band whose light shifts past a line: two blocks of responsivity around a
-	// line make the ratio turn round.
-	ring, err := pyro.Tabulated(
-		[]pyro.Wavelength{0.5 * µm, 0.501 * µm, 0.551 * µm, 0.552 * µm, 3.0 * µm, 3.001 * µm, 3.05 * µm, 3.051 * µm},
-		[]float64{0, 1, 1, 0, 0, 0.05, 0.05, 0}, pyro.PerWatt)
-	if err != nil {
-		t.Fatal(err)
-	}
-	line, err := pyro.Line(1.6 * µm)
-	if err != nil {
-		t.Fatal(err)
-	}
-	if ring.Mean() >= line.Mean() {
-		t.Fatal("the example needs the ring's mean below the line")
-	}
-	p, err := pyro.NewPair(ring, line, 500, 5500)
-	if err != nil {
-		t.Fatal(err)
-	}
+	p := turningPair(t)
 	if p.Monotonic() {
 		t.Fatal("the example needs a ratio that turns round")
 	}
@@ -135,7 +159,7 @@ func TestRatioWithTwoTemperaturesGivesBoth(t *testing.T) {
 		t.Fatalf("branches %v", branches)
 	}
 	for _, b := range branches {
-		part, err := pyro.NewPair(ring, line, b.Lo, b.Hi)
+		part, err := pyro.NewPair(p.Short(), p.Long(), b.Lo, b.Hi)
 		if err != nil || !part.Monotonic() {
 			t.Fatalf("branch %v: %v", b, err)
 		}
@@ -149,7 +173,7 @@ func TestRatioWithTwoTemperaturesGivesBoth(t *testing.T) {
 		near(t, "ratio at its low end", b.RatioLo, p.Ratio(b.Lo), 1e-12)
 		near(t, "ratio at its high end", b.RatioHi, p.Ratio(b.Hi), 1e-12)
 	}
-	_, err = p.Temperature(p.Ratio(4500), 1)
+	_, err := p.Temperature(p.Ratio(4500), 1)
 	var two *pyro.AmbiguousRatio
 	if !errors.As(err, &two) || len(two.Temperatures) != 2 {
 		t.Fatalf("error %v", err)

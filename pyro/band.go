@@ -246,7 +246,7 @@ func (b *Band) RadianceTemperature(s float64) Temperature {
 		radiance, n := b.radianceAndLogSlope(t) // n = d lnS/d lnT = −d lnS/d ln(1/T)
 		step := math.Log(s/radiance) / n        // of ln T
 		t = Temperature(float64(t) / (1 - math.Max(math.Min(step, 0.5), -1)))
-		if math.Abs(step) < 1e-15 {
+		if math.Abs(step) < 1e-9 { // what is left is of the order of its square
 			break
 		}
 	}

@@ -10,16 +10,27 @@ import (
 
 func TestSensitivityToRadiance(t *testing.T) {
 	// |dT| for 1 %, 0.01·(λT²/c₂)(1 − e^(−c₂/λT)), from the formula, four decimals printed.
-	for _, r := range []struct{ t, um, want float64 }{
-		{300, 0.65, .0407}, {300, 10, .6204}, {1000, 0.9, .6255}, {1000, 3.9, 2.6429},
-		{1500, 1.6, 2.4959}, {2000, 2.2, 5.8838}, {3000, 10, 23.8305},
+	const printed = 0.5e-4 + 1e-9
+	um := [...]float64{0.65, 0.9, 1.0, 1.6, 2.2, 3.9, 5.0, 10}
+	for _, r := range []struct {
+		t    float64
+		want [8]float64
+	}{
+		{300, [8]float64{.0407, .0563, .0626, .1001, .1376, .2440, .3127, .6204}},
+		{500, [8]float64{.1129, .1564, .1738, .2780, .3823, .6772, .8660, 1.6398}},
+		{1000, [8]float64{.4518, .6255, .6950, 1.1119, 1.5269, 2.6429, 3.2796, 5.3016}},
+		{1500, [8]float64{1.0165, 1.4074, 1.5637, 2.4959, 3.3965, 5.5776, 6.6709, 9.6456}},
+		{2000, [8]float64{1.8071, 2.5013, 2.7781, 4.3986, 5.8838, 9.1284, 10.6032, 14.2607}},
+		{3000, [8]float64{4.0634, 5.6025, 6.2036, 9.5089, 12.2060, 17.2631, 19.2912, 23.8305}},
 	} {
-		λ, T := pyro.Wavelength(r.um)*pyro.Micrometre, pyro.Temperature(r.t)
-		if got := 0.01 * pyro.SensitivityToRadiance(λ, T); math.Abs(got-r.want) > 0.5e-4+1e-9 {
-			t.Errorf("1 %% of radiance at %g µm, %g K is worth %.5f K, want %.4f", r.um, r.t, got, r.want)
-		}
-		if got := 0.01 * pyro.SensitivityToEmissivity(λ, T); math.Abs(got+r.want) > 0.5e-4+1e-9 {
-			t.Errorf("1 %% of emissivity at %g µm, %g K is worth %.5f K, want −%.4f", r.um, r.t, got, r.want)
+		for i, want := range r.want {
+			λ, T := pyro.Wavelength(um[i])*pyro.Micrometre, pyro.Temperature(r.t)
+			if got := 0.01 * pyro.SensitivityToRadiance(λ, T); math.Abs(got-want) > printed {
+				t.Errorf("1 %% of radiance at %v, %v is worth %.5f K, want %.4f", λ, T, got, want)
+			}
+			if got := 0.01 * pyro.SensitivityToEmissivity(λ, T); math.Abs(got+want) > printed {
+				t.Errorf("1 %% of emissivity at %v, %v is worth %.5f K, want −%.4f", λ, T, got, want)
+			}
 		}
 	}
 }
@@ -140,14 +151,28 @@ func TestEffectiveWavelengthsOfRatios(t *testing.T) {
 }
 
 func TestFiniteErrorsOfSettings(t *testing.T) {
-	// True T 1273.15 K, ε 0.80, instrument set to 1: what it reads, from the formula, 1e-4 K printed.
-	for _, r := range []struct{ um, want float64 }{
-		{0.9, 1250.9199}, {1.6, 1234.1883}, {3.9, 1186.3340}, {5.0, 1168.6727}, {10, 1118.4053},
+	// What an instrument set to an emissivity of its own reads, from the formula, 1e-4 K printed.
+	const printed = 0.5e-4 + 1e-9
+	for _, r := range []struct{ t, ε, set, um, want float64 }{
+		{1273.15, 0.8, 1, 0.9, 1250.9199}, {1273.15, 0.8, 1, 1.6, 1234.1883}, {1273.15, 0.8, 1, 3.9, 1186.3340},
+		{1273.15, 0.8, 1, 5.0, 1168.6727}, {1273.15, 0.8, 1, 10, 1118.4053}, {1273.15, 0.8, 0.85, 0.9, 1267.0326},
+		{573.15, 0.3, 1, 2.2, 518.4465}, {573.15, 0.3, 1, 10, 393.5689},
 	} {
 		λ := pyro.Wavelength(r.um) * pyro.Micrometre
-		got := pyro.RadianceTemperature(λ, 0.8*pyro.Radiance(λ, 1273.15)).Kelvin()
-		if math.Abs(got-r.want) > 0.5e-4+1e-9 {
-			t.Errorf("%g µm: %.5f K, want %.4f K", r.um, got, r.want)
+		got := pyro.RadianceTemperature(λ, r.ε*pyro.Radiance(λ, pyro.Temperature(r.t))/r.set).Kelvin()
+		if math.Abs(got-r.want) > printed {
+			t.Errorf("%g K, %g µm, ε %g set to %g: %.5f K, want %.4f K", r.t, r.um, r.ε, r.set, got, r.want)
+		}
+	}
+	// The same where what the surface reflects of its surroundings is not taken off.
+	for _, r := range []struct{ t, walls, ε, um, want float64 }{
+		{323.15, 296.15, 0.95, 10, 325.6316}, {323.15, 296.15, 0.5, 10, 364.1571},
+		{1173.15, 1473.15, 0.8, 0.9, 1330.4835}, {1173.15, 1473.15, 0.8, 3.9, 1334.6731},
+	} {
+		λ := pyro.Wavelength(r.um) * pyro.Micrometre
+		l := pyro.Radiance(λ, pyro.Temperature(r.t)) + (1-r.ε)/r.ε*pyro.Radiance(λ, pyro.Temperature(r.walls))
+		if got := pyro.RadianceTemperature(λ, l).Kelvin(); math.Abs(got-r.want) > printed {
+			t.Errorf("%g K among %g K, %g µm, ε %g: %.5f K, want %.4f K", r.t, r.walls, r.um, r.ε, got, r.want)
 		}
 	}
 }

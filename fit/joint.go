@@ -40,22 +40,21 @@ func (w *Work) describe(β, θ0, θ1 float64) (d []float64) {
 		}
 		return d
 	}
+	// overBand for two parameters: ln E = θ₀ + θ₁μ + θ₁²v/2 + θ₁³s/6.
+	μ, dμ := d, w.dcoord[:len(black)]
 	d = w.effective[:len(black)]
-	lo, hi := w.low[:len(black)], w.high[:len(black)]
+	h := θ1 * θ1 / 2
+	c := h * θ1 / 3
 	for j := range black {
-		n := w.gauss[6*j : 6*j+6]
-		lo[j], hi[j] = θ0+θ1*n[0], θ0+θ1*n[1]
+		q := &w.spread[j]
+		g[j] = θ0 + θ1*μ[j] + h*q.v + c*q.s
+		d[j] = μ[j] + θ1*q.v + h*q.s
+		v[j] = rate[j] + θ1*dμ[j] + h*q.dv + c*q.ds
 	}
-	expTo(lo, lo)
-	expTo(hi, hi)
+	expTo(g, g)
 	for j, s := range black {
-		n := w.gauss[6*j : 6*j+6]
-		a, b := (1-n[2])*lo[j], n[2]*hi[j]
-		ε := a + b
-		inverse := 1 / ε
-		model[j], g[j] = s*ε, s*ε
-		d[j] = (a*n[0] + b*n[1]) * inverse
-		v[j] = rate[j] + (n[5]*(hi[j]-lo[j])+θ1*(a*n[3]+b*n[4]))*inverse
+		g[j] *= s
+		model[j] = g[j]
 	}
 	return d
 }

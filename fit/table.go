@@ -8,11 +8,10 @@ import (
 )
 
 // bandTable holds, for wide bands, smooth functions of β = 1/T as polynomials over equal
-// cells: what is left of ln S(β) after its rate, and the two-node Gauss rule of the
-// measure R·L within the band. A linear emissivity enters with its mean coordinate, which
-// is exact; another enters as w₋ε(λ₋) + w₊ε(λ₊), which is exact
-// for polynomials in λ up to order 3 and leaves for others the fourth order,
-// (σ⁴/24)(κ−1−γ²)·ε⁗ with σ, γ, κ width, skewness and kurtosis of the measure.
+// cells: what is left of ln S(β) after its rate, and the first three moments of the
+// family's coordinate d under the measure R·L. They make the mean of a polynomial in d up to
+// order 3 exactly, and that of its exponential to the third order of the band's width
+// (overBand).
 type bandTable struct {
 	cells     int
 	from, by  float64   // first β and cell width
@@ -24,8 +23,8 @@ type bandTable struct {
 const (
 	tableCells     = 128
 	tableDegree    = 5
-	tableMean      = 2 // ln S + rate·β; mean of the family's coordinate d
-	tableFunctions = 5 // and d₋, d₊, w₊ where the mean alone doesn't make ε
+	tableMean      = 2 // ln S + rate·β; mean of d
+	tableFunctions = 4 // and the second and third central moments, where the mean alone doesn't make ε
 )
 
 func newBandTable(e *Estimator) *bandTable {
@@ -41,10 +40,7 @@ func newBandTable(e *Estimator) *bandTable {
 		for j, i := range e.used {
 			for k, z := range nodes {
 				β := t.from + t.by*(float64(cell)+(z+1)/2)
-				v := gaussRule(e.bands[i], β, e.rate[j])
-				v[2] = e.family.Coordinate(pyro.Wavelength(v[2]))
-				v[3] = e.family.Coordinate(pyro.Wavelength(v[3]))
-				v[1] = (1-v[4])*v[2] + v[4]*v[3]
+				v := moments(e.bands[i], e.family, β, e.rate[j])
 				for g := range v {
 					f[g][k] = v[g]
 				}
@@ -109,35 +105,68 @@ func chebyshevNodes(toPower *[tableDegree + 1][tableDegree + 1]float64) (nodes [
 	return nodes
 }
 
-// gaussRule returns ln S + rate·β, an empty place, and λ₋, λ₊, w₊ of the two-node Gauss rule of R·L at 1/T = β.
-func gaussRule(b *pyro.Band, β, rate float64) [tableFunctions]float64 {
+// moments returns ln S + rate·β, and the mean, second and third central moment of the
+// coordinate under R·L at 1/T = β.
+func moments(b *pyro.Band, family emissivity.Family, β, rate float64) [tableFunctions]float64 {
 	λ, w := b.Nodes()
-	// Radiances relative to that at the mean keep the sums in range.
-	mean := b.Mean()
-	logMean := math.Log(pyro.C1L) - 5*math.Log(float64(mean)) - pyro.C2*β/float64(mean) - math.Log1p(-math.Exp(-pyro.C2*β/float64(mean)))
+	// Radiances relative to that at the mean wavelength keep the sums in range.
+	mean := float64(b.Mean())
+	x := pyro.C2 * β / mean
+	logMean := math.Log(pyro.C1L) - 5*math.Log(mean) - x - math.Log1p(-math.Exp(-x))
+	centre := family.Coordinate(pyro.Wavelength(mean))
 	var m0, m1, m2, m3 float64
 	for k := range λ {
 		l := float64(λ[k])
-		x := pyro.C2 * β / l
-		y := w[k] * math.Exp(5*math.Log(float64(mean)/l)-(x-pyro.C2*β/float64(mean))) *
-			math.Expm1(-pyro.C2*β/float64(mean)) / math.Expm1(-x)
-		d := l - float64(mean)
+		z := pyro.C2 * β / l
+		y := w[k] * math.Exp(5*math.Log(mean/l)-(z-x)) * math.Expm1(-x) / math.Expm1(-z)
+		d := family.Coordinate(λ[k]) - centre
 		m0 += y
 		m1 += y * d
 		m2 += y * d * d
 		m3 += y * d * d * d
 	}
 	m1, m2, m3 = m1/m0, m2/m0, m3/m0
-	v := [tableFunctions]float64{math.Log(m0) + logMean + rate*β, 0, float64(mean), float64(mean), 0.5}
-	variance := m2 - m1*m1
-	if len(λ) == 1 || variance <= 0 {
-		return v
+	return [tableFunctions]float64{math.Log(m0) + logMean + rate*β, centre + m1, m2 - m1*m1, m3 - 3*m1*m2 + 2*m1*m1*m1}
+}
+
+// spread is what a wide band adds to the coordinate: its second and third central moment
+// and their derivatives by β.
+type spread struct{ v, s, dv, ds float64 }
+
+// overBand returns the mean of ε over a band whose coordinate has mean μ, its derivative by
+// β, and writes ∂/∂θₖ to grad. A polynomial's mean is Σ θₖ E[dᵏ]. For its exponential, with pⱼ
+// the Taylor coefficients of the polynomial about μ,
+//
+//	ln E = p₀ + v(p₂ + p₁²/2) + s(p₃ + p₁p₂ + p₁³/6) + O(width⁴)
+func (e *Estimator) overBand(grad, θ []float64, μ, dμ float64, q spread) (mean, dβ float64) {
+	if e.link == emissivity.Identity {
+		power := [4]float64{1, μ, μ*μ + q.v, μ*μ*μ + 3*μ*q.v + q.s}
+		slope := [4]float64{0, dμ, 2*μ*dμ + q.dv, 3*μ*μ*dμ + 3*(dμ*q.v+μ*q.dv) + q.ds}
+		for k, v := range θ {
+			grad[k] = power[k]
+			mean += v * power[k]
+			dβ += v * slope[k]
+		}
+		return mean, dβ
 	}
-	σ := math.Sqrt(variance)
-	half := (m3 - 3*m1*m2 + 2*m1*m1*m1) / (2 * variance * σ) // half the skewness
-	root := math.Hypot(1, half)
-	v[2] = float64(mean) + m1 + σ*(half-root)
-	v[3] = float64(mean) + m1 + σ*(half+root)
-	v[4] = (1 - half/root) / 2
-	return v
+	var p [4]float64
+	for k := len(θ) - 1; k >= 0; k-- { // Horner, with the derivatives along
+		p[3] = p[3]*μ + p[2]
+		p[2] = p[2]*μ + p[1]
+		p[1] = p[1]*μ + p[0]
+		p[0] = p[0]*μ + θ[k]
+	}
+	a, b := p[2]+p[1]*p[1]/2, p[3]+p[1]*p[2]+p[1]*p[1]*p[1]/6
+	mean = math.Exp(p[0] + q.v*a + q.s*b)
+	dβ = mean * (p[1]*dμ + q.dv*a + q.ds*b + dμ*(q.v*(3*p[3]+2*p[1]*p[2])+q.s*(2*p[2]*p[2]+3*p[1]*p[3]+p[1]*p[1]*p[2])))
+	// ∂pⱼ/∂θₖ = C(k,j) μ^(k−j)
+	c0, c1, c2, c3 := 1.0, 0.0, 0.0, 0.0
+	for k := range θ {
+		grad[k] = mean * (c0 + q.v*(c2+p[1]*c1) + q.s*(c3+c1*p[2]+p[1]*c2+p[1]*p[1]/2*c1))
+		c3 = c3*μ + c2
+		c2 = c2*μ + c1
+		c1 = c1*μ + c0
+		c0 *= μ
+	}
+	return mean, dβ
 }

@@ -23,7 +23,7 @@ type Work struct {
 	beta          float64
 	black, rate   []float64 // S and d lnS/dβ
 	coord, dcoord []float64 // mean coordinate of R·L and its derivative by β
-	gauss         []float64 // wide bands: d₋, d₊, w₊ and their derivatives, n×6
+	spread        []spread  // of wide bands, where the mean alone doesn't make ε
 
 	// at one (β, ψ)
 	model, jac []float64 // m, and ∂m/∂(β, ψ), n×size
@@ -48,7 +48,7 @@ type Work struct {
 	groups               []group
 	inverse              []float64 // 1/variance
 	gain, slope          []float64
-	effective, low, high []float64
+	effective            []float64
 	jointGrad, jointStep [3]float64
 	jointHess            [6]float64
 	jointVar             float64 // of β, by the last solution
@@ -77,11 +77,10 @@ func (e *Estimator) NewWork() *Work {
 	}
 	if !e.lines {
 		w.coord, w.dcoord = f(e.n), f(e.n)
-		w.gauss = f(e.n * 6)
+		w.spread = make([]spread, e.n)
 	}
 	if e.fast != nil {
 		w.groups, w.inverse, w.gain, w.slope, w.effective = make([]group, e.fast.groups), f(e.n), f(e.n), f(e.n), f(e.n)
-		w.low, w.high = f(e.n), f(e.n)
 	}
 	return w
 }
@@ -187,12 +186,9 @@ func (w *Work) blackbody(β float64) {
 	}
 	for j := range black {
 		row := t.row(cell, j)[2*(tableDegree+1):]
-		n := w.gauss[6*j : 6*j+6]
-		for f := range 3 {
-			var d float64
-			n[f], d = horner((*[tableDegree + 1]float64)(row[f*(tableDegree+1):]), z)
-			n[3+f] = d * scale
-		}
+		v, dv := horner((*[tableDegree + 1]float64)(row), z)
+		q, dq := horner((*[tableDegree + 1]float64)(row[tableDegree+1:]), z)
+		w.spread[j] = spread{v, q, dv * scale, dq * scale}
 	}
 }
 
@@ -235,7 +231,7 @@ func (w *Work) evaluate(β float64, ψ []float64, expected bool) float64 {
 		row := w.jac[j*size : (j+1)*size]
 		s, rate := w.black[j], w.rate[j]
 		var ε, dβ float64
-		if w.gauss == nil || e.table.functions == tableMean {
+		if e.lines || e.table.functions == tableMean {
 			d := w.coord[j]
 			ε, dβ = e.curve(θ, d)
 			if e.lines {
@@ -252,21 +248,9 @@ func (w *Work) evaluate(β float64, ψ []float64, expected bool) float64 {
 				f *= d
 			}
 		} else {
-			g := w.gauss[6*j : 6*j+6]
-			lo, slopeLo := e.curve(θ, g[0])
-			hi, slopeHi := e.curve(θ, g[1])
-			wHi := g[2]
-			ε = (1-wHi)*lo + wHi*hi
-			dβ = g[5]*(hi-lo) + (1-wHi)*slopeLo*g[3] + wHi*slopeHi*g[4]
-			a, b := s*(1-wHi), s*wHi
-			if e.link == emissivity.Exp {
-				a *= lo
-				b *= hi
-			}
+			ε, dβ = e.overBand(row[1:1+e.p], θ, w.coord[j], w.dcoord[j], w.spread[j])
 			for k := range e.p {
-				row[1+k] = a + b
-				a *= g[0]
-				b *= g[1]
+				row[1+k] *= s
 			}
 		}
 		w.eps[j] = ε

@@ -22,6 +22,7 @@ import (
 const (
 	maxGroups  = 12
 	tooClose   = 0.05  // |t − ξ| below which the scan is asked
+	mirrorPull = 0.75  // of the way a mirror image would lie beyond ξ: the third order draws it in
 	mirrorEnd  = 0.93  // the largest |t| at which the second minimum is looked for
 	slopeEnd   = 0.995 // the largest |t|: ε at one edge is then 0.5 % of the mean
 	clearlySet = 5     // a signal of so many σ has a logarithm to speak of
@@ -267,7 +268,7 @@ func (w *Work) profile(t float64) point {
 func (w *Work) descend(p point) point {
 	ξ := w.e.fast.ξ
 	for range 6 {
-		if p.gain < 0.01 {
+		if p.gain < 0.05 {
 			return p
 		}
 		c := p.t - ξ
@@ -307,7 +308,7 @@ func (w *Work) mirrorPair(dst []basin, first point) (list []basin, ok bool) {
 	if math.Abs(t-f.ξ) < tooClose {
 		return dst, false // the two minima are about to merge: let the scan decide
 	}
-	start := w.profile(max(-mirrorEnd, min(mirrorEnd, 2*f.ξ-t)))
+	start := w.profile(max(-mirrorEnd, min(mirrorEnd, f.ξ+mirrorPull*(f.ξ-t))))
 	at := w.descend(start)
 	if at.chi2 > first.chi2+far {
 		return append(dst, found), true

@@ -16,6 +16,7 @@ var floors = map[string]int{
 	"candent/fit":          2,
 	"candent/fit/internal": 1,
 	"candent/emissivity":   1,
+	"candent/pyro/its90":   1,
 	"candent/pyro":         0,
 }
 

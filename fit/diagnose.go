@@ -26,6 +26,7 @@ func (e *Estimator) DiagnoseTo(dst *Result, w *Work, r Readings) error {
 	if dst.hasCov {
 		dst.fillShares(w)
 	}
+	dst.scaleSigma()
 	if dst.basins[0].atBound {
 		dst.note("a bound of the emissivity is active: the interval is right, a standard uncertainty would not be")
 	}
@@ -59,6 +60,17 @@ func (r *Result) describe(w *Work) {
 		} else {
 			r.sigma[j] = math.Sqrt(e.assume.Noise.cov[e.used[j]*(len(e.bands)+1)])
 		}
+	}
+}
+
+// scaleSigma gives σ the size that the residuals show, where it is unknown beforehand.
+func (r *Result) scaleSigma() {
+	if !r.e.assume.Noise.unknown || r.dof < 1 {
+		return
+	}
+	f := math.Sqrt(r.chi2 / float64(r.dof))
+	for j := range r.sigma {
+		r.sigma[j] *= f
 	}
 }
 
@@ -120,8 +132,7 @@ func (r *Result) noteStructure() {
 	if e.n < 12 || e.whiten != nil || r.dof < 1 {
 		return
 	}
-	scale := math.Sqrt(r.chi2 / float64(r.dof)) // residuals are judged against their own size
-	if !(scale > 0) {
+	if !(r.chi2 > 0) {
 		return
 	}
 	z := make([]float64, e.n)
@@ -156,9 +167,25 @@ func (r *Result) noteRuns(z []float64) {
 	}
 }
 
+// peakLimit is what a residual in units of σ exceeds by chance in one spectrum of n channels
+// out of 2000. Where σ comes from the residuals, the channel looked at is left out of it: with
+// ν degrees of freedom, z·√((ν−1)/(ν−z²)) has Student's distribution with ν − 1.
+func (r *Result) peakLimit(n int) float64 {
+	p := 1 - 0.0005/float64(n)
+	if !r.e.assume.Noise.unknown {
+		return distuv.UnitNormal.Quantile(p)
+	}
+	ν := float64(r.dof)
+	if ν < 2 {
+		return math.Inf(1)
+	}
+	t := distuv.StudentsT{Mu: 0, Sigma: 1, Nu: ν - 1}.Quantile(p)
+	return t * math.Sqrt(ν/(ν-1+t*t))
+}
+
 // notePeaks names single channels far above the fit: an emission line.
 func (r *Result) notePeaks(z, λ []float64) {
-	limit := distuv.UnitNormal.Quantile(1 - 0.0005/float64(len(z)))
+	limit := r.peakLimit(len(z))
 	for j, v := range z {
 		before, after := 0.0, 0.0
 		if j > 0 {
@@ -182,9 +209,12 @@ func (r *Result) notePeaks(z, λ []float64) {
 	}
 }
 
-// noteFringe looks for a residual periodic in 1/λ by the classical periodogram
-// (A. Schuster 1898); under no fringe the normalised power of one frequency is
-// exponentially distributed with mean 1.
+// noteFringe looks for a residual periodic in 1/λ by the periodogram whose power, under no
+// fringe, is exponentially distributed with mean 1 wherever the channels lie (J. D. Scargle,
+// Studies in astronomical time series analysis II, Astrophys. J. 263 (1982) 835, cited from
+// memory): with φ counted from the phase at which cosine and sine are orthogonal,
+//
+//	P = ½ ( (Σ z cos φ)²/Σ cos² φ + (Σ z sin φ)²/Σ sin² φ ) / σ²
 func (r *Result) noteFringe(z, λ []float64) {
 	n := len(z)
 	lo, hi := math.Inf(1), 0.0
@@ -201,13 +231,27 @@ func (r *Result) noteFringe(z, λ []float64) {
 	best, at := 0.0, 0
 	trials := n/2 - 2
 	for k := 3; k < 3+trials; k++ { // fewer than three periods may be the family's curvature
-		c, s := 0.0, 0.0
-		for j, v := range z {
-			φ := 2 * math.Pi * float64(k) * (1/λ[j] - lo) / (hi - lo)
-			c += v * math.Cos(φ)
-			s += v * math.Sin(φ)
+		ω := 2 * math.Pi * float64(k) / (hi - lo)
+		c2, s2 := 0.0, 0.0
+		for _, l := range λ {
+			sin, cos := math.Sincos(2 * ω * (1/l - lo))
+			c2 += cos
+			s2 += sin
 		}
-		if p := (c*c + s*s) / (float64(n) * variance); p > best {
+		phase := math.Atan2(s2, c2) / 2
+		var c, s, cc, ss float64
+		for j, v := range z {
+			sin, cos := math.Sincos(ω*(1/λ[j]-lo) - phase)
+			c += v * cos
+			s += v * sin
+			cc += cos * cos
+			ss += sin * sin
+		}
+		p := c * c / cc   // cc ≥ n/2 ≥ ss by the choice of phase
+		if ss > 1e-6*cc { // else the sine is zero at every channel
+			p += s * s / ss
+		}
+		if p /= 2 * variance; p > best {
 			best, at = p, k
 		}
 	}

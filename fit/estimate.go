@@ -234,7 +234,7 @@ func (e *Estimator) IntervalTo(dst *Result, w *Work, r Readings, p float64) erro
 		dst.hasInterval = true
 		return nil
 	}
-	if q*q*scale > fastLimit*max(1, scale) && len(dst.basins) > 0 && dst.basins[0].fast {
+	if q*q > fastLimit && len(dst.basins) > 0 && dst.basins[0].fast {
 		if err := e.rescan(dst, w); err != nil {
 			return err
 		}

@@ -320,7 +320,9 @@ func (w *Work) mirrorPair(dst []basin, first point) (list []basin, ok bool) {
 	switch {
 	case got == outside:
 		return append(dst, found), true
-	case got == failed || math.Abs(other.beta-found.beta) < 1e-5*found.beta:
+	case got == converged && math.Abs(other.beta-found.beta) < 1e-5*found.beta:
+		return dst, false // drawn back to the first, which says nothing of a second: let the scan decide
+	case got == failed:
 		// None found. Where the curve over t falls from the middle to the place looked at,
 		// or to the edge beyond it, there is one, and the way to it was lost.
 		top := w.profile((t + start.t) / 2)

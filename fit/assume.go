@@ -3,6 +3,8 @@ package fit
 import (
 	"candent/emissivity"
 	"candent/pyro"
+	"candent/pyro/detector"
+	"candent/pyro/sightline"
 )
 
 // Assume is what is taken for known. Every field's zero value has the meaning that
@@ -17,6 +19,17 @@ type Assume struct {
 	Range Range
 	// Temperature, where it is known from elsewhere. Zero: free.
 	Temperature TemperaturePrior
+	// Surroundings that the surface reflects. Zero: nothing shines in.
+	Surroundings sightline.Surroundings
+	// Path from the surface to the detector, in that order. nil: it is clear.
+	Path []sightline.Layer
+	// Field of view. Zero: a target of one temperature fills it.
+	Field sightline.Field
+	// Detectors, one for each band. nil: readings are radiances.
+	Detectors []detector.Channel
+	// Stray light of a spectrometer or a lens, as a fraction of the channels' mean signal that
+	// every channel receives. nil: none.
+	Stray *pyro.Input
 	// Shared inputs act on several channels at once.
 	Shared []Shared
 	// Loss of a residual. Zero: its square.
@@ -37,8 +50,8 @@ type TemperaturePrior struct {
 	StdK  float64
 }
 
-// Shared is an input that several channels share: a calibration's scale, a dark level,
-// a window's transmittance. It enters as one unknown with a prior, not as a per-channel
+// Shared is an effect of any shape over the channels that they share, beside the inputs of
+// detectors, path and surroundings. It enters as one unknown with a prior, not as a per-channel
 // uncertainty, so that averaging over channels doesn't make it vanish. Where the input
 // lies one Std above its value, reading i is higher by
 //
@@ -78,9 +91,11 @@ var (
 
 // Readings is one reading of all channels, in the order of the bands.
 type Readings struct {
-	Signal []float64 // W m⁻² sr⁻¹ m⁻¹, or any one unit where the level is relative
+	// Signal of each channel: W m⁻² sr⁻¹ m⁻¹, the unit of its detector where one is declared,
+	// or any one unit where the level is relative.
+	Signal []float64
 	Std    []float64 // standard uncertainties, same unit; nil where Noise is declared
-	// Shared holds what is known of the shared inputs in this reading: how far each lies
-	// from its value, in units of its standard uncertainty. nil: nothing, 0 is expected.
-	Shared []float64
+	// Inputs holds the values of the inputs that are new with each reading, in the order of
+	// Estimator.PerReading. nil: they have the values that they were declared with.
+	Inputs []float64
 }

@@ -47,9 +47,10 @@ func (e *Estimator) deficiencyAt(β float64, ψ []float64) string {
 		}
 	}
 	for k := range e.q {
-		names, free = append(names, e.assume.Shared[k].Name), append(free, e.p+k)
+		names, free = append(names, e.sight.columns[k].name), append(free, e.p+k)
 	}
 	w := e.NewWork()
+	w.open()
 	for j := range w.std {
 		w.signal[j], w.std[j] = 1, 1
 	}
@@ -76,6 +77,9 @@ func (e *Estimator) deficiencyAt(β float64, ψ []float64) string {
 		rows = append(rows, row)
 	}
 	for k := range e.q {
+		if e.sight.free(k) {
+			continue
+		}
 		row := make([]float64, len(free))
 		row[len(free)-e.q+k] = 1
 		rows = append(rows, row)

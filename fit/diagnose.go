@@ -56,7 +56,7 @@ func (r *Result) describe(w *Work) {
 	copy(r.model, w.model)
 	for j, m := range r.model {
 		if e.whiten == nil {
-			r.sigma[j] = math.Hypot(w.std[j], w.rel*m)
+			r.sigma[j] = math.Sqrt(w.variance(j, m))
 		} else {
 			r.sigma[j] = math.Sqrt(e.assume.Noise.cov[e.used[j]*(len(e.bands)+1)])
 		}
@@ -103,6 +103,9 @@ func (r *Result) fillShares(w *Work) {
 		r.share[2+i] = v * v
 	}
 	for k := range e.q {
+		if e.sight.free(k) {
+			continue
+		}
 		v := c[1+e.p+k]
 		r.share[2+len(e.data)+k] = v * v
 	}

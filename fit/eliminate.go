@@ -285,7 +285,6 @@ func (w *Work) startTheta(β float64, ψ []float64) {
 	e := w.e
 	w.blackbody(β)
 	clear(ψ)
-	copy(ψ[e.p:], w.mean)
 	if e.link == emissivity.Identity {
 		for k, fixed := range e.fixed {
 			if fixed {
@@ -293,9 +292,9 @@ func (w *Work) startTheta(β float64, ψ []float64) {
 			}
 		}
 		sum, count := 0.0, 0.0
-		for j, s := range w.signal {
-			if s > 0 && w.black[j] > 0 {
-				sum += math.Min(s/w.black[j], 1e300)
+		for j := range w.signal {
+			if E, _, ok := w.surface(j); ok {
+				sum += math.Min(E, 1e300)
 				count++
 			}
 		}
@@ -310,21 +309,25 @@ func (w *Work) startTheta(β float64, ψ []float64) {
 	size := e.size()
 	clear(w.hess)
 	clear(w.grad)
-	if !w.haveLog {
+	if !w.haveLog && !w.sighted {
 		logTo(w.log, w.signal)
 		w.haveLog = true
 	}
 	for j, y := range w.log {
-		s := w.signal[j]
-		if !(s > 0) || !(w.black[j] > 0) {
+		E, s, ok := w.surface(j)
+		if !ok {
 			continue
 		}
-		variance := w.std[j]*w.std[j] + w.rel*w.rel*s*s
+		if w.sighted {
+			y = math.Log(E)
+		} else {
+			y -= math.Log(w.black[j])
+		}
+		variance := w.variance(j, w.signal[j])
 		if e.whiten != nil {
 			variance = e.assume.Noise.cov[e.used[j]*(len(e.bands)+1)]
 		}
 		weight := s * s / variance
-		y -= math.Log(w.black[j])
 		d := e.coord[j]
 		fa := 1.0
 		for a := range e.p {
@@ -339,7 +342,6 @@ func (w *Work) startTheta(β float64, ψ []float64) {
 	}
 	for a := range e.q {
 		w.hess[(1+e.p+a)*size+1+e.p+a] = 1
-		w.grad[1+e.p+a] = w.mean[a]
 	}
 	for k, fixed := range e.fixed { // move what is fixed to the right-hand side
 		if !fixed {

@@ -39,6 +39,11 @@ func (e *Estimator) EstimateTo(dst *Result, w *Work, r Readings) error {
 		return err
 	}
 	copy(dst.signal, w.signal)
+	for _, side := range w.censored {
+		if side != 0 {
+			dst.dof-- // a bound leaves nothing to test by
+		}
+	}
 	ψ := dst.psi
 	if t := e.assume.Temperature; t.Value > 0 && t.StdK == 0 {
 		β := 1 / float64(t.Value)
@@ -124,7 +129,11 @@ func (w *Work) weightedRows(β float64, from int) {
 	for j := range e.n {
 		f := 1.0
 		if e.whiten == nil {
-			f = 1 / math.Sqrt(w.std[j]*w.std[j]+w.rel*w.rel*w.model[j]*w.model[j])
+			f = 1 / math.Sqrt(w.variance(j, w.model[j]))
+			if w.censored[j] != 0 {
+				_, _, weight := bounded(float64(w.censored[j]), w.signal[j]-w.model[j], 1/(f*f))
+				f *= math.Sqrt(weight)
+			}
 		}
 		for a, v := range w.jac[j*size : (j+1)*size] {
 			row := w.rows[j*size:]
@@ -142,7 +151,9 @@ func (w *Work) weightedRows(β float64, from int) {
 		}
 	}
 	for k := range e.q {
-		row()[1+e.p+k] = 1
+		if !e.sight.free(k) {
+			row()[1+e.p+k] = 1
+		}
 	}
 	hold := func(a int) {
 		for i := a; i < len(w.rows); i += size {

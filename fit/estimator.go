@@ -19,7 +19,9 @@ type Estimator struct {
 	bands  []*pyro.Band
 	used   []int // indices into bands of the channels that no mask leaves out
 
-	n, p, q int // channels used, parameters of the family, shared inputs
+	n, p, q int // channels used, parameters of the family, shared unknowns
+	sight   *sight
+	noisy   bool // every detector has a noise model, so that readings need no Std
 	lines   bool
 	peak    []float64 // c₁Lλ⁻⁵ of each channel's line
 	rate    []float64 // c₂/λ, K
@@ -34,7 +36,7 @@ type Estimator struct {
 	data     []datum // priors: rows on θ
 	fixed    []bool
 	value    []float64
-	relative []float64 // shared inputs' effects, n×q
+	relative []float64 // effects of Assume.Shared, n × their number
 	additive []float64
 	whiten   *mat.TriDense // L of the covariance LLᵀ
 	loss     [2]float64    // E ψ′, E ψ²
@@ -82,10 +84,14 @@ func New(bands []*pyro.Band, a Assume) (*Estimator, error) {
 	if err := e.compileShared(); err != nil {
 		return nil, err
 	}
+	if err := e.compileSight(); err != nil {
+		return nil, err
+	}
 	if err := e.compileNoise(); err != nil {
 		return nil, err
 	}
 	e.compileBands()
+	e.compileOptics()
 	e.compileLimits()
 	e.deficient = e.findDeficiency()
 	e.fast = e.compileFast()
@@ -172,8 +178,8 @@ func (e *Estimator) compileFamily() error {
 }
 
 func (e *Estimator) compileShared() error {
-	e.q = len(e.assume.Shared)
-	e.relative, e.additive = make([]float64, e.n*e.q), make([]float64, e.n*e.q)
+	q := len(e.assume.Shared)
+	e.relative, e.additive = make([]float64, e.n*q), make([]float64, e.n*q)
 	for k, s := range e.assume.Shared {
 		if s.Relative == nil && s.Additive == nil {
 			return fmt.Errorf("%w: shared input %d (%s) acts on nothing", ErrAssume, k, s.Name)
@@ -193,7 +199,7 @@ func (e *Estimator) compileShared() error {
 				if v := from[i]; math.IsNaN(v) || math.IsInf(v, 0) || what == "Relative" && math.Abs(v) > 1 {
 					return fmt.Errorf("%w: shared input %d (%s): %s[%d] = %g: finite, and a fraction where relative", ErrAssume, k, s.Name, what, i, v)
 				}
-				to[j*e.q+k] = from[i]
+				to[j*q+k] = from[i]
 			}
 		}
 	}
@@ -236,13 +242,11 @@ func (e *Estimator) compileBands() {
 		b := e.bands[i]
 		lo, hi := b.Edges()
 		e.lines = e.lines && lo == hi
-		λ := b.Mean()
+		e.lines = e.lines && e.sight.channel[j].Curve == nil
+		λ := e.sight.channel[j].centre
 		e.peak[j] = pyro.C1L / math.Pow(float64(λ), 5)
 		e.rate[j] = pyro.C2 / float64(λ)
 		e.coord[j] = e.family.Coordinate(λ)
-	}
-	if !e.lines {
-		e.table = newBandTable(e)
 	}
 }
 

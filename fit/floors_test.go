@@ -11,14 +11,15 @@ import (
 
 // floors of the house; imports run downwards only. The longest matching prefix counts.
 var floors = map[string]int{
-	"candent/examples":      4,
-	"candent/fit/readings":  3,
-	"candent/fit":           2,
-	"candent/fit/internal":  1,
-	"candent/emissivity":    1,
-	"candent/pyro/detector": 1,
-	"candent/pyro/its90":    1,
-	"candent/pyro":          0,
+	"candent/examples":       4,
+	"candent/fit/readings":   3,
+	"candent/fit":            2,
+	"candent/fit/internal":   1,
+	"candent/emissivity":     1,
+	"candent/pyro/detector":  1,
+	"candent/pyro/its90":     1,
+	"candent/pyro/sightline": 1,
+	"candent/pyro":           0,
 }
 
 func floorOf(path string) int {

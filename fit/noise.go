@@ -154,6 +154,54 @@ func (l Loss) expected() (slope, square float64) {
 	return 1, 1
 }
 
+// variance returns that of channel j's noise under the model m.
+func (w *Work) variance(j int, m float64) float64 {
+	return w.std[j]*w.std[j] + w.shot[j]*max(m, 0) + w.rel*w.rel*m*m
+}
+
+// cost returns the deviance of channel j under the model m.
+func (w *Work) cost(j int, m float64) float64 {
+	if w.shot[j] > 0 {
+		return shotDeviance(w.signal[j], max(m, 0), w.std[j]*w.std[j], w.shot[j])
+	}
+	return deviance(w.signal[j], m, w.std[j], w.rel)
+}
+
+// shotDeviance is the deviance for the variance V(u) = a + bu,
+//
+//	D = 2 ∫_m^s (s − u)/V(u) du = e²/V(m) · 2((1 + x) ln(1 + x) − x)/x²,  e = s − m, x = be/V(m)
+//
+// A reading below −a/b, where the variance would be negative, counts as if at it.
+func shotDeviance(s, m, a, b float64) float64 {
+	v := a + b*m
+	e := s - m
+	x := b * e / v
+	f := 1 - x*(1.0/3-x*(1.0/6-x*(1.0/10-x/15)))
+	switch {
+	case x <= -1:
+		f = 2 / (x * x) * -x
+	case math.Abs(x) > 1e-3:
+		f = 2 * ((1+x)*math.Log1p(x) - x) / (x * x)
+	}
+	return e * e / v * f
+}
+
+// bounded returns what a reading costs that is only a bound, −2 ln Φ(z) with z the number of
+// standard deviations by which the model is on the right side of it, its pull in the place of
+// a residual, and its expected weight. side is 1 where the truth is at least the reading.
+func bounded(side, diff, variance float64) (cost, pull, weight float64) {
+	std := math.Sqrt(variance)
+	z := -side * diff / std
+	Φ := math.Erfc(-z/math.Sqrt2) / 2
+	ψ := -z // φ(z)/Φ(z) far below, to 1/z²
+	logΦ := -z*z/2 - math.Log(-z*math.Sqrt(2*math.Pi))
+	if z > -30 {
+		logΦ = math.Log(Φ)
+		ψ = math.Exp(-z*z/2) / math.Sqrt(2*math.Pi) / Φ
+	}
+	return -2 * logΦ, side * ψ * std, ψ * (ψ + z)
+}
+
 // deviance returns the quasi-likelihood deviance (R. W. M. Wedderburn, Quasi-likelihood
 // functions, Biometrika 61 (1974) 439) of a reading s under the model m with variance
 // V(u) = a² + r²u²,

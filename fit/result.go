@@ -275,8 +275,8 @@ func (r *Result) Budget() []Share {
 	for _, d := range r.e.data {
 		names = append(names, d.name)
 	}
-	for _, s := range r.e.assume.Shared {
-		names = append(names, s.Name)
+	for _, c := range r.e.sight.columns {
+		names = append(names, c.name)
 	}
 	var list []Share
 	for i, v := range r.share {

@@ -2,9 +2,11 @@ package fit
 
 import (
 	"math"
+	"slices"
 
 	"candent/emissivity"
 	"candent/pyro"
+	"candent/pyro/detector"
 )
 
 // bandTable holds, for wide bands, smooth functions of β = 1/T as polynomials over equal
@@ -27,8 +29,10 @@ const (
 	tableFunctions = 4 // and the second and third central moments, where the mean alone doesn't make ε
 )
 
-func newBandTable(e *Estimator) *bandTable {
-	t := &bandTable{cells: tableCells, from: e.hottest, by: (e.coldest - e.hottest) / tableCells, n: e.n, functions: tableFunctions}
+// newBandTable compiles the table over a range of β with the responsivities weighted by through(band, λ), which
+// counts relative to its value at the band's mean wavelength; nil counts as 1.
+func newBandTable(e *Estimator, hottest, coldest float64, through func(i int, λ pyro.Wavelength) float64) *bandTable {
+	t := &bandTable{cells: tableCells, from: hottest, by: (coldest - hottest) / tableCells, n: e.n, functions: tableFunctions}
 	if e.link == emissivity.Identity && e.p <= 2 {
 		t.functions = tableMean
 	}
@@ -36,11 +40,15 @@ func newBandTable(e *Estimator) *bandTable {
 	var toPower [tableDegree + 1][tableDegree + 1]float64
 	nodes := chebyshevNodes(&toPower)
 	var f [tableFunctions][tableDegree + 1]float64
+	seen := make([]weightedBand, e.n)
+	for j, i := range e.used {
+		seen[j] = e.weightedBand(j, i, through)
+	}
 	for cell := range t.cells {
-		for j, i := range e.used {
+		for j := range e.used {
 			for k, z := range nodes {
 				β := t.from + t.by*(float64(cell)+(z+1)/2)
-				v := moments(e.bands[i], e.family, β, e.rate[j])
+				v := seen[j].moments(e.family, β, e.rate[j])
 				for g := range v {
 					f[g][k] = v[g]
 				}
@@ -105,28 +113,65 @@ func chebyshevNodes(toPower *[tableDegree + 1][tableDegree + 1]float64) (nodes [
 	return nodes
 }
 
+// weightedBand is a band as its table sees it.
+type weightedBand struct {
+	λ, w  []float64 // nodes and weights
+	mean  float64
+	curve *detector.Curve // of S(T), where one was calibrated
+	plain []float64       // weights before what the light passes
+}
+
+func (e *Estimator) weightedBand(j, i int, through func(int, pyro.Wavelength) float64) weightedBand {
+	c := &e.sight.channel[j]
+	b := weightedBand{mean: float64(c.centre), curve: c.Curve}
+	if c.Curve != nil { // two nodes have the mean and the variance that A and B tell of
+		mean, std := c.Curve.Moments()
+		b.λ = []float64{float64(mean) - std, float64(mean) + std}
+		b.plain = []float64{0.5, 0.5}
+	} else {
+		λ, w := e.bands[i].Nodes()
+		b.plain = w
+		for _, l := range λ {
+			b.λ = append(b.λ, float64(l))
+		}
+	}
+	b.w = slices.Clone(b.plain)
+	if through == nil {
+		return b
+	}
+	middle := through(i, c.centre)
+	for k := range b.w {
+		if middle != 0 {
+			b.w[k] *= through(i, pyro.Wavelength(b.λ[k])) / middle
+		}
+	}
+	return b
+}
+
 // moments returns ln S + rate·β, and the mean, second and third central moment of the
 // coordinate under R·L at 1/T = β.
-func moments(b *pyro.Band, family emissivity.Family, β, rate float64) [tableFunctions]float64 {
-	λ, w := b.Nodes()
+func (b *weightedBand) moments(family emissivity.Family, β, rate float64) [tableFunctions]float64 {
 	// Radiances relative to that at the mean wavelength keep the sums in range.
-	mean := float64(b.Mean())
-	x := pyro.C2 * β / mean
-	logMean := math.Log(pyro.C1L) - 5*math.Log(mean) - x - math.Log1p(-math.Exp(-x))
-	centre := family.Coordinate(pyro.Wavelength(mean))
-	var m0, m1, m2, m3 float64
-	for k := range λ {
-		l := float64(λ[k])
+	x := pyro.C2 * β / b.mean
+	level := math.Log(pyro.C1L) - 5*math.Log(b.mean) - x - math.Log1p(-math.Exp(-x))
+	centre := family.Coordinate(pyro.Wavelength(b.mean))
+	var m0, m1, m2, m3, plain float64
+	for k, l := range b.λ {
 		z := pyro.C2 * β / l
-		y := w[k] * math.Exp(5*math.Log(mean/l)-(z-x)) * math.Expm1(-x) / math.Expm1(-z)
-		d := family.Coordinate(λ[k]) - centre
+		y := math.Exp(5*math.Log(b.mean/l)-(z-x)) * math.Expm1(-x) / math.Expm1(-z)
+		plain += b.plain[k] * y
+		y *= b.w[k]
+		d := family.Coordinate(pyro.Wavelength(l)) - centre
 		m0 += y
 		m1 += y * d
 		m2 += y * d * d
 		m3 += y * d * d * d
 	}
+	if b.curve != nil {
+		level = math.Log(b.curve.Signal(pyro.Temperature(1/β))) - math.Log(plain)
+	}
 	m1, m2, m3 = m1/m0, m2/m0, m3/m0
-	return [tableFunctions]float64{math.Log(m0) + logMean + rate*β, centre + m1, m2 - m1*m1, m3 - 3*m1*m2 + 2*m1*m1*m1}
+	return [tableFunctions]float64{math.Log(m0) + level + rate*β, centre + m1, m2 - m1*m1, m3 - 3*m1*m2 + 2*m1*m1*m1}
 }
 
 // spread is what a wide band adds to the coordinate: its second and third central moment

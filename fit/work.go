@@ -13,11 +13,14 @@ type Work struct {
 	e *Estimator
 
 	// the reading
-	signal, std []float64 // std: a of the variance a² + r²m²
+	signal, std []float64 // std: a of the variance a² + shot·m + r²m²
+	shot        []float64
 	rel         float64
 	log         []float64 // ln of the signals, where positive
 	haveLog     bool
-	mean        []float64 // of the shared inputs
+	censored    []int8 // −1: the signal is at most that given; 1: at least
+	sighted     bool   // the model is that of a sight or has shared unknowns
+	seen        seen
 
 	// at one β
 	beta          float64
@@ -27,7 +30,6 @@ type Work struct {
 
 	// at one (β, ψ)
 	model, jac []float64 // m, and ∂m/∂(β, ψ), n×size
-	eps        []float64 // m/S without the shared inputs
 	residual   []float64
 	chi2       float64
 	grad, hess []float64 // −½∂χ² and its expected curvature, of (β, ψ)
@@ -63,12 +65,15 @@ type gridPoint struct{ beta, chi2, slope float64 }
 func (e *Estimator) NewWork() *Work {
 	f := func(n int) []float64 { return make([]float64, n) }
 	s := e.size()
-	w := &Work{e: e, signal: f(e.n), std: f(e.n), log: f(e.n), mean: f(e.q),
-		black: f(e.n), rate: f(e.n), model: f(e.n), jac: f(e.n * s), eps: f(e.n), residual: f(e.n),
+	w := &Work{e: e, signal: f(e.n), std: f(e.n), log: f(e.n), shot: f(e.n), censored: make([]int8, e.n), sighted: !e.sight.clear || e.q > 0,
+		black: f(e.n), rate: f(e.n), model: f(e.n), jac: f(e.n * s), residual: f(e.n),
 		grad: f(s), hess: f(s * s), psi: f(s), trial: f(s), step: f(s), chol: f(s * s), invRow: f(s * (e.p + 1)),
 		active: make([]int, 0, e.p+1), activeLow: make([]bool, 0, e.p+1), schur: f((e.p + 1) * (e.p + 1)), multiply: f(e.p + 1), rowRoom: f(s),
 		grid: make([]gridPoint, gridSteps+1)}
 	w.coord = e.coord
+	if w.sighted {
+		w.newSeen()
+	}
 	count := max(e.n+1+len(e.data)+e.q+1+e.p, s)
 	w.rows = f(count * s)
 	var err error
@@ -92,24 +97,21 @@ func (w *Work) load(r Readings) error {
 		return fmt.Errorf("%w: %d signals for %d bands", ErrReadings, len(r.Signal), len(e.bands))
 	}
 	noise := e.assume.Noise
-	if needs := noise.kind == perReading; needs != (r.Std != nil) || needs && len(r.Std) != len(e.bands) {
+	if needs := noise.kind == perReading; needs && r.Std == nil && !e.noisy || !needs && r.Std != nil || r.Std != nil && len(r.Std) != len(e.bands) {
 		return fmt.Errorf("%w: %d standard uncertainties for %d bands, with %v: give one for each reading, or declare Noise and leave Std nil", ErrReadings, len(r.Std), len(e.bands), noise)
 	}
-	if r.Shared != nil && len(r.Shared) != e.q {
-		return fmt.Errorf("%w: %d values of %d shared inputs", ErrReadings, len(r.Shared), e.q)
-	}
-	clear(w.mean)
-	for k, v := range r.Shared {
-		if math.IsNaN(v) || math.Abs(v) > 1e3 {
-			return &ReadingError{k, "shared input", v, "it is counted in units of its standard uncertainty"}
+	if w.sighted {
+		if err := w.look(r.Inputs); err != nil {
+			return err
 		}
-		w.mean[k] = v
+	} else if len(r.Inputs) > 0 {
+		return fmt.Errorf("%w: %d values for no input that changes per reading", ErrReadings, len(r.Inputs))
 	}
 	w.rel = 0
 	if noise.kind == modelled {
 		w.rel = noise.rel
 	}
-	largest := 0.0
+	largest, mean := 0.0, 0.0
 	for j, i := range e.used {
 		s := r.Signal[i]
 		switch {
@@ -118,21 +120,35 @@ func (w *Work) load(r Readings) error {
 		case s <= 0 && noise.kind == modelled && noise.floor == 0:
 			return &ReadingError{i, "signal", s, "noise that is relative alone gives no zero or negative reading: declare a floor (RelativeWithFloor)"}
 		}
-		w.signal[j] = s
-		largest = max(largest, math.Abs(s))
-		switch noise.kind {
-		case perReading:
-			u := r.Std[i]
-			if !(u > 0) || math.IsInf(u, 0) {
+		var u float64
+		switch {
+		case noise.kind == modelled:
+			u = noise.floor
+		case noise.kind == perReading && r.Std != nil:
+			if u = r.Std[i]; !(u > 0) || math.IsInf(u, 0) {
 				return &ReadingError{i, "standard uncertainty", u, "it must be positive and finite; leave out a channel that says nothing"}
 			}
-			w.std[j] = u
-		case modelled:
-			w.std[j] = noise.floor
+		case noise.kind == perReading:
+			u = math.Sqrt(e.sight.channel[j].Noise.Constant)
 		}
+		if w.sighted {
+			w.censored[j] = e.sight.channel[j].bound(s)
+			s, u = w.linearised(j, s, u)
+			if noise.kind == perReading && r.Std == nil {
+				w.shot[j] = e.sight.channel[j].Noise.PerSignal / w.seen.gain[j]
+			} else {
+				w.shot[j] = 0
+			}
+			mean += s * w.seen.gain[j] / float64(e.n)
+		}
+		w.signal[j], w.std[j] = s, u
+		largest = max(largest, math.Abs(s))
 	}
 	if largest == 0 {
 		return fmt.Errorf("%w: every signal is 0", ErrReadings)
+	}
+	if w.sighted {
+		w.shine(mean)
 	}
 	w.haveLog = false
 	if e.fast != nil {
@@ -150,8 +166,17 @@ func (w *Work) blackbody(β float64) {
 		return
 	}
 	w.beta = β
-	e := w.e
-	black, rate := w.black[:e.n], w.rate[:e.n]
+	w.e.radiate(β, w.e.table, w.black, w.rate, w.coord, w.spread)
+	if w.e.lines {
+		return
+	}
+	w.e.drift(β, w.dcoord, w.spread)
+}
+
+// radiate fills S and d ln S/dβ of a blackbody at 1/T = β in each channel, and for wide bands
+// the mean coordinate and its second and third central moments under R·L.
+func (e *Estimator) radiate(β float64, t *bandTable, black, rate, coord []float64, width []spread) {
+	black, rate = black[:e.n], rate[:e.n]
 	if e.lines {
 		for j, k := range e.rate {
 			black[j] = -k * β
@@ -168,7 +193,6 @@ func (w *Work) blackbody(β float64) {
 		}
 		return
 	}
-	t := e.table
 	cell, z := t.locate(β)
 	scale := 2 / t.by
 	for j, k := range e.rate {
@@ -177,18 +201,29 @@ func (w *Work) blackbody(β float64) {
 		black[j], d = horner((*[tableDegree + 1]float64)(row), z)
 		black[j] -= k * β
 		rate[j] = d*scale - k
-		w.coord[j], d = horner((*[tableDegree + 1]float64)(row[tableDegree+1:]), z)
-		w.dcoord[j] = d * scale
+		coord[j], _ = horner((*[tableDegree + 1]float64)(row[tableDegree+1:]), z)
+		if t.functions == tableFunctions {
+			width[j].v, _ = horner((*[tableDegree + 1]float64)(row[2*(tableDegree+1):]), z)
+			width[j].s, _ = horner((*[tableDegree + 1]float64)(row[3*(tableDegree+1):]), z)
+		}
 	}
 	expTo(black, black)
-	if t.functions == tableMean {
-		return
-	}
-	for j := range black {
-		row := t.row(cell, j)[2*(tableDegree+1):]
-		v, dv := horner((*[tableDegree + 1]float64)(row), z)
-		q, dq := horner((*[tableDegree + 1]float64)(row[tableDegree+1:]), z)
-		w.spread[j] = spread{v, q, dv * scale, dq * scale}
+}
+
+// drift fills the derivatives by β of what radiate found of wide bands' coordinates.
+func (e *Estimator) drift(β float64, dcoord []float64, width []spread) {
+	t := e.table
+	cell, z := t.locate(β)
+	scale := 2 / t.by
+	for j := range dcoord {
+		row := t.row(cell, j)
+		_, d := horner((*[tableDegree + 1]float64)(row[tableDegree+1:]), z)
+		dcoord[j] = d * scale
+		if t.functions == tableFunctions {
+			_, dv := horner((*[tableDegree + 1]float64)(row[2*(tableDegree+1):]), z)
+			_, ds := horner((*[tableDegree + 1]float64)(row[3*(tableDegree+1):]), z)
+			width[j].dv, width[j].ds = dv*scale, ds*scale
+		}
 	}
 }
 
@@ -226,6 +261,20 @@ func (w *Work) evaluate(β float64, ψ []float64, expected bool) float64 {
 	w.blackbody(β)
 	e := w.e
 	θ, η := ψ[:e.p], ψ[e.p:]
+	if w.sighted {
+		w.evaluateSight(β, θ, η)
+	} else {
+		w.evaluatePlain(θ)
+	}
+	w.accumulate(expected)
+	w.addPriors(β, ψ)
+	return w.chi2
+}
+
+// evaluatePlain fills model and jac where the readings are the surface's radiances and
+// nothing is shared.
+func (w *Work) evaluatePlain(θ []float64) {
+	e := w.e
 	size := e.size()
 	for j := range e.n {
 		row := w.jac[j*size : (j+1)*size]
@@ -253,26 +302,10 @@ func (w *Work) evaluate(β float64, ψ []float64, expected bool) float64 {
 				row[1+k] *= s
 			}
 		}
-		w.eps[j] = ε
 		m := s * ε
 		row[0] = m*rate + s*dβ
-		if e.q > 0 {
-			scale, add := 1.0, 0.0
-			for k, v := range η {
-				scale += e.relative[j*e.q+k] * v
-				add += e.additive[j*e.q+k] * v
-				row[1+e.p+k] = m*e.relative[j*e.q+k] + e.additive[j*e.q+k]
-			}
-			for k := range 1 + e.p {
-				row[k] *= scale
-			}
-			m = m*scale + add
-		}
 		w.model[j] = m
 	}
-	w.accumulate(expected)
-	w.addPriors(β, ψ)
-	return w.chi2
 }
 
 // accumulate forms χ², −½ of its gradient and its expected curvature from model and jac.
@@ -291,12 +324,23 @@ func (w *Work) accumulate(expected bool) {
 		if e.whiten == nil {
 			m := w.model[j]
 			diff = w.signal[j] - m
-			variance = w.std[j]*w.std[j] + w.rel*w.rel*m*m
-			cost = deviance(w.signal[j], m, w.std[j], w.rel)
+			variance = w.variance(j, m)
+			cost = w.cost(j, m)
 		} else {
 			cost = diff * diff
 		}
 		weight := 1.0
+		if w.censored[j] != 0 {
+			cost, diff, weight = bounded(float64(w.censored[j]), diff, variance)
+			w.chi2 += cost
+			for a, v := range row {
+				w.grad[a] += diff / variance * v
+				for b := range a + 1 {
+					w.hess[a*size+b] += weight / variance * v * row[b]
+				}
+			}
+			continue
+		}
 		if e.assume.Loss.kind != square {
 			cost, weight = e.assume.Loss.of(math.Sqrt(max(cost, 0)))
 		}
@@ -371,11 +415,14 @@ func (w *Work) addPriors(β float64, ψ []float64) {
 			}
 		}
 	}
-	for k, mean := range w.mean {
-		z := mean - ψ[e.p+k]
+	for k := range e.q {
+		if e.sight.free(k) {
+			continue
+		}
+		z := ψ[e.p+k]
 		w.chi2 += z * z
 		a := 1 + e.p + k
-		w.grad[a] += z
+		w.grad[a] -= z
 		w.hess[a*size+a]++
 	}
 	for k, fixed := range e.fixed {

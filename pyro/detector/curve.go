@@ -50,3 +50,12 @@ func Predict(b *pyro.Band) (a, bb float64) {
 	r := variance / (mean * mean)
 	return mean * (1 - 6*r), pyro.C2 / 2 * r
 }
+
+// Moments returns the mean wavelength λ₀ and the standard deviation σ of a responsivity whose
+// curve this is to leading order, the inverse of Predict: with r = σ²/λ₀², A = λ₀(1 − 6r) and
+// B = c₂r/2.
+func (c Curve) Moments() (mean pyro.Wavelength, std float64) {
+	r := max(0, 2*c.B/pyro.C2)
+	λ := c.A / (1 - 6*r)
+	return pyro.Wavelength(λ), λ * math.Sqrt(r)
+}

@@ -9,6 +9,9 @@ import (
 // eliminateSteps bounds the Gauss–Newton steps at one temperature.
 const eliminateSteps = 60
 
+// roughGain is the relative decrease of χ² below which a scan goes on to its next temperature.
+const roughGain = 1e-10
+
 // eliminate minimises χ² over ψ at 1/T = β, from the ψ given, under the bounds of the
 // emissivity. It returns χ² and its slope dχ²/dβ along the curve, which by the envelope
 // theorem is the partial one. One step is exact where ψ enters linearly.
@@ -32,7 +35,7 @@ func (w *Work) eliminate(β float64, ψ []float64) (chi2, slope float64) {
 			}
 			gain += w.step[a] * (2*w.grad[1+a] - v)
 		}
-		if gain <= 1e-18*(1+chi2) && w.settled(ψ, n) {
+		if w.rough && gain <= roughGain*(1+chi2) || gain <= 1e-18*(1+chi2) && w.settled(ψ, n) {
 			break
 		}
 		before := chi2
@@ -71,7 +74,7 @@ func (w *Work) settled(ψ []float64, n int) bool {
 
 // linear reports whether ψ enters the residuals linearly, so that one step is exact.
 func (e *Estimator) linear() bool {
-	return e.link == emissivity.Identity && e.q == 0 && e.assume.Loss.kind == square &&
+	return e.link == emissivity.Identity && e.q == 0 && !e.bent && e.assume.Loss.kind == square &&
 		(e.assume.Noise.kind != modelled || e.assume.Noise.rel == 0)
 }
 

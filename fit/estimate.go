@@ -190,12 +190,22 @@ func (dst *Result) fromFast(w *Work) {
 	b := &dst.basins[0]
 	dst.beta, dst.chi2, dst.fitted = b.beta, b.chi2, true
 	copy(dst.psi, b.theta[:e.p])
+	if w.sighted {
+		copy(dst.psi, w.kept[b.slot].psi)
+	}
 	scale := 1.0
 	if e.assume.Noise.unknown {
 		if dst.dof <= 0 {
 			return
 		}
 		scale = dst.chi2 / float64(dst.dof)
+	}
+	if w.sighted {
+		for i, v := range w.kept[b.slot].cov {
+			dst.cov[i] = scale * v
+		}
+		dst.hasCov = true
+		return
 	}
 	c := b.cov
 	full := [9]float64{c[0], c[1], c[2], c[1], c[3], c[4], c[2], c[4], c[5]}
@@ -327,7 +337,7 @@ func (w *Work) extendFromGrid(dst *Result, limit float64) {
 
 // at returns χ² of the curve at 1/T = β.
 func (w *Work) at(β float64) float64 {
-	if w.e.fast != nil && w.e.linear() {
+	if w.e.fast != nil && !w.sighted && w.e.linear() {
 		if chi2, ok := w.linearAt(β); ok {
 			return chi2
 		}

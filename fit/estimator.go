@@ -21,6 +21,7 @@ type Estimator struct {
 
 	n, p, q int // channels used, parameters of the family, shared unknowns
 	sight   *sight
+	bent    bool // χ² is not quadratic in a linear family's parameters, whatever else
 	noisy   bool // every detector has a noise model, so that readings need no Std
 	lines   bool
 	peak    []float64 // c₁Lλ⁻⁵ of each channel's line

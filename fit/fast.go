@@ -51,7 +51,7 @@ type fastPlan struct {
 func (e *Estimator) compileFast() *fastPlan {
 	a := e.assume
 	plain := !slices.Contains(e.fixed, true) && len(e.data) == 0
-	if !plain || e.p > 2 || e.q > 0 || !e.sight.clear || e.whiten != nil || a.Loss.kind != square ||
+	if !plain || e.p > 2 || e.whiten != nil || a.Loss.kind != square ||
 		a.Temperature != (TemperaturePrior{}) || e.deficient != "" || e.n < e.p+2 {
 		return nil
 	}
@@ -90,9 +90,10 @@ func (w *Work) fastBasins(dst []basin) (list []basin, ok bool) {
 	e := w.e
 	dst = dst[:0]
 	f := e.fast
-	if f == nil || !w.grouped() {
+	if f == nil || w.sighted && !w.groupedSight() || !w.sighted && !w.grouped() {
 		return dst, false
 	}
+	w.slot = 0
 	if e.link == emissivity.Identity && e.p == 2 {
 		return w.linearBasins(dst)
 	}
@@ -301,6 +302,9 @@ func (w *Work) mirrorPair(dst []basin, first point) (list []basin, ok bool) {
 		return dst, false
 	}
 	far := farAbove
+	if w.sighted { // what the shared unknowns could take up, the groups don't know
+		far = math.Inf(1)
+	}
 	if e.assume.Noise.unknown {
 		far *= found.chi2 / float64(e.n-e.p-1)
 	}
@@ -318,6 +322,8 @@ func (w *Work) mirrorPair(dst []basin, first point) (list []basin, ok bool) {
 		other, got = w.refineLinear(at, roughly)
 	}
 	switch {
+	case got == failed && w.sighted && other.chi2 > found.chi2+farAbove:
+		return append(dst, found), true
 	case got == outside:
 		return append(dst, found), true
 	case got == converged && math.Abs(other.beta-found.beta) < 1e-5*found.beta:
@@ -359,6 +365,9 @@ const (
 // refuses where they don't converge, or where the minimum lies outside the range or the
 // bounds of the emissivity.
 func (w *Work) refineFast(β, θ0, θ1, done float64) (basin, outcome) {
+	if w.sighted {
+		return w.refineSight(β, θ0, θ1, done)
+	}
 	e := w.e
 	before := 0.0
 	for range fastSteps {

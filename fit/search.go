@@ -11,6 +11,7 @@ type basin struct {
 	atEnd      bool // the range cuts it off
 	atBound    bool // a bound of the emissivity is active in it
 	fast       bool // found by the fast path, with θ and the covariance of (β, θ)
+	slot       int  // of Work.kept, where a sight's unknowns and covariance are
 	theta      [2]float64
 	cov        [6]float64
 	bent       float64 // how much of the expected curvature along β is there
@@ -35,7 +36,9 @@ func (w *Work) scan() {
 
 func (w *Work) gridPoint(β float64, ψ []float64) gridPoint {
 	w.startTheta(β, ψ)
+	w.rough = true
 	chi2, slope := w.eliminate(β, ψ)
+	w.rough = false
 	return gridPoint{β, chi2, slope}
 }
 

@@ -267,6 +267,7 @@ func (e *Estimator) compileDetectors() error {
 	s := e.sight
 	s.channel = make([]channel, e.n)
 	e.noisy = e.assume.Detectors != nil
+	e.bent = e.assume.Surroundings.Remainder == sightline.Itself
 	for j, i := range e.used {
 		c := channel{dark: -1, gain: -1, exposure: -1}
 		if e.assume.Detectors != nil {
@@ -279,6 +280,7 @@ func (e *Estimator) compileDetectors() error {
 		if c.Noise.PerSignal > 0 && e.assume.Noise.kind != perReading {
 			return fmt.Errorf("%w: band %d: its detector has a noise model, and Noise declares another", ErrAssume, i)
 		}
+		e.bent = e.bent || c.Noise.PerSignal > 0 || c.Saturation != 0 || c.Floor != 0
 		c.dark = s.register(c.Dark, anything, false)
 		c.gain = s.register(c.Gain, positive, false)
 		c.exposure = s.register(c.Exposure, positive, false)

@@ -19,6 +19,7 @@ type Work struct {
 	log         []float64 // ln of the signals, where positive
 	haveLog     bool
 	censored    []int8 // −1: the signal is at most that given; 1: at least
+	rough       bool   // eliminate may stop early
 	sighted     bool   // the model is that of a sight or has shared unknowns
 	seen        seen
 
@@ -57,9 +58,14 @@ type Work struct {
 	newton               [3]float64
 	jointCost            float64 // χ², where joint has it; else 0
 	decrement            float64
+	kept                 [3]kept // the last basins that refineSight found
+	slot                 int
 }
 
 type gridPoint struct{ beta, chi2, slope float64 }
+
+// kept are a basin's unknowns beside β, and the covariance of all.
+type kept struct{ psi, cov []float64 }
 
 // NewWork returns scratch for the estimator.
 func (e *Estimator) NewWork() *Work {
@@ -83,6 +89,11 @@ func (e *Estimator) NewWork() *Work {
 	if !e.lines {
 		w.coord, w.dcoord = f(e.n), f(e.n)
 		w.spread = make([]spread, e.n)
+	}
+	if e.fast != nil && w.sighted {
+		for i := range w.kept {
+			w.kept[i] = kept{f(e.p + e.q), f(s * s)}
+		}
 	}
 	if e.fast != nil {
 		w.groups, w.inverse, w.gain, w.slope, w.effective = make([]group, e.fast.groups), f(e.n), f(e.n), f(e.n), f(e.n)

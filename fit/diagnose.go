@@ -74,43 +74,6 @@ func (r *Result) scaleSigma() {
 	}
 }
 
-// fillShares splits u²(T) by input: with c the first column of the covariance in units of
-// independent data, each datum gives (c·J)².
-func (r *Result) fillShares(w *Work) {
-	e := r.e
-	size := e.size()
-	c := r.cov[:size] // symmetric: row 0 is column 0; a common factor cancels in Budget
-	clear(r.share)
-	for j := range e.n {
-		v := 0.0
-		for a, f := range w.jac[j*size : (j+1)*size] {
-			v += c[a] * f
-		}
-		if e.whiten == nil {
-			v /= r.sigma[j]
-		}
-		r.share[0] += v * v
-	}
-	if t := e.assume.Temperature; t.StdK > 0 {
-		v := c[0] / (r.beta * r.beta * t.StdK)
-		r.share[1] = v * v
-	}
-	for i, d := range e.data {
-		v := 0.0
-		for k, f := range d.row {
-			v += c[1+k] * f * d.weight
-		}
-		r.share[2+i] = v * v
-	}
-	for k := range e.q {
-		if e.sight.free(k) {
-			continue
-		}
-		v := c[1+e.p+k]
-		r.share[2+len(e.data)+k] = v * v
-	}
-}
-
 // lackOfFit is the probability of a larger χ² below which a family counts as contradicted.
 const lackOfFit = 0.001
 

@@ -29,6 +29,19 @@ func (e *ReadingError) Error() string {
 
 func (e *ReadingError) Unwrap() error { return ErrReadings }
 
+// WallsError says that no temperature in the range explains the readings: what the surroundings
+// and the path alone give is more than was measured. It wraps ErrReadings.
+type WallsError struct {
+	Channel         int     // where it is clearest
+	Alone, Measured float64 // in the unit of the signal net of the dark level, per gain
+}
+
+func (e *WallsError) Error() string {
+	return fmt.Sprintf("fit: readings: the walls alone give more than was measured: %.4g against %.4g in channel %d. Are the wall temperature, its view factor or the reflectance taken too high, or the transmittance?", e.Alone, e.Measured, e.Channel)
+}
+
+func (e *WallsError) Unwrap() error { return ErrReadings }
+
 // UnitError says that the spectrum's shape fixes a temperature at which the readings would
 // need an emissivity that no surface has: their unit is wrong, or the level is relative and
 // not declared so. It wraps ErrReadings.

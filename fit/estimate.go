@@ -73,10 +73,11 @@ func (e *Estimator) EstimateTo(dst *Result, w *Work, r Readings) error {
 	b := dst.basins[0]
 	w.startTheta(b.beta, ψ)
 	w.eliminate(b.beta, ψ)
-	if !b.atEnd {
-		dst.covariance(w, b.beta, 0)
-	}
 	dst.chi2 = b.chi2
+	if b.atEnd {
+		return w.tooBright(b)
+	}
+	dst.covariance(w, b.beta, 0)
 	return nil
 }
 

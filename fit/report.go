@@ -120,7 +120,7 @@ func (r *Result) Report() string {
 	p("%v", r)
 	p("")
 	p("Assumed")
-	p("  surface       %v, opaque, reflecting nothing, filling the field", e.family)
+	p("  surface       %v, opaque", e.family)
 	p("  noise         %v", e.assume.Noise)
 	p("  range         %.0f K to %.0f K", float64(e.assume.Range.Min), float64(e.assume.Range.Max))
 	if t := e.assume.Temperature; t.Value > 0 {
@@ -128,6 +128,9 @@ func (r *Result) Report() string {
 	}
 	for _, d := range e.data {
 		p("  known         %s", d.name)
+	}
+	for _, line := range e.sightWords() {
+		p("  %s", line)
 	}
 	for _, s := range e.assume.Shared {
 		p("  shared input  %s", s.Name)
@@ -179,9 +182,16 @@ func (r *Result) Report() string {
 	}
 	if budget := r.Budget(); budget != nil {
 		p("")
-		p("Where u(T) comes from")
+		p("%-42s %-9s %s", "Where u(T) comes from", "share", "effect of one u more")
 		for _, s := range budget {
-			p("  %-40s %.2g K", s.Name, s.StdK)
+			effect, kept := "", ""
+			if s.EffectK != 0 {
+				effect = fmt.Sprintf("%+.2g K", s.EffectK)
+			}
+			if s.Shared {
+				kept = "shared by all readings"
+			}
+			p("%s", strings.TrimRight(fmt.Sprintf("  %-40s %-9s %-21s %s", s.Name, fmt.Sprintf("%.2g K", s.StdK), effect, kept), " "))
 		}
 	}
 	if len(r.notes) > 0 {

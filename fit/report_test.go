@@ -13,6 +13,8 @@ import (
 	"candent/emissivity"
 	"candent/fit"
 	"candent/pyro"
+	"candent/pyro/detector"
+	"candent/pyro/sightline"
 )
 
 // reportCases are results of each kind, from deterministic readings: noise of ± 0.5 σ in
@@ -67,6 +69,15 @@ func reportCases(t *testing.T) map[string]*fit.Result {
 	y, u = ripple(grey.signals(bands, 0.85*µm, 1523), 0.01)
 	add("shared", bands, fit.Assume{Emissivity: emissivity.Grey().WithPrior("level", 0.6, 0.02),
 		Shared: []fit.Shared{fit.SharedScale("calibration scale", 0.02, 6)}}, y, u)
+
+	// A single band past hot walls through an old window: 0.9·(0.8 L(1300 K) + 0.2 L(1400 K)).
+	one = lines(t, 1.6, 1.6, 1)
+	y = []float64{0.9 * (0.8*planck(1.6, 1300) + 0.2*planck(1.6, 1400))}
+	add("furnace", one, fit.Assume{Emissivity: emissivity.Grey().WithPrior("level", 0.8, 0.05),
+		Surroundings: sightline.Enclosure(&pyro.Input{Name: "furnace wall", Unit: "K", Value: 1400, Std: 15, PerReading: true}),
+		Path:         []sightline.Layer{sightline.Window(&pyro.Input{Name: "window transmittance", Value: 0.9, Std: 0.02})},
+		Detectors:    []detector.Channel{{Gain: &pyro.Input{Name: "calibration gain", Value: 1, Std: 0.01}}},
+		Range:        fit.Range{Min: 800, Max: 2000}}, y, scaled(y, 0.003))
 	return out
 }
 

@@ -46,8 +46,10 @@ type Result struct {
 	limit       float64
 	hot, cold   end // in β: the hot end is the smaller
 
-	share []float64 // of u²(T): readings, temperature prior, data, shared inputs
-	notes []string
+	// Of u²(T): readings, their rounding, temperature prior, data, shared unknowns; and what
+	// one standard uncertainty does to β, with its sign (0 for the first two).
+	share, effect []float64
+	notes         []string
 }
 
 // NewResult returns a result for the estimator to write to.
@@ -55,7 +57,7 @@ func (e *Estimator) NewResult() *Result {
 	f := func(n int) []float64 { return make([]float64, n) }
 	size := e.size()
 	return &Result{e: e, basins: make([]basin, 0, maxBasins), psi: f(e.p + e.q), cov: f(size * size),
-		signal: f(e.n), model: f(e.n), sigma: f(e.n), share: f(2 + len(e.data) + e.q)}
+		signal: f(e.n), model: f(e.n), sigma: f(e.n), share: f(firstDatum + len(e.data) + e.q), effect: f(firstDatum + len(e.data) + e.q)}
 }
 
 func (r *Result) reset(e *Estimator) {
@@ -65,6 +67,7 @@ func (r *Result) reset(e *Estimator) {
 	r.hot, r.cold = end{}, end{}
 	r.limit = math.Inf(-1)
 	clear(r.share)
+	clear(r.effect)
 	free := e.p
 	for _, fixed := range e.fixed {
 		if fixed {
@@ -250,39 +253,3 @@ func (r *Result) Undetermined() string { return r.e.deficient }
 
 // Notes returns what the user should know beside the numbers.
 func (r *Result) Notes() []string { return append([]string(nil), r.notes...) }
-
-// Share is one input's part of the standard uncertainty of the temperature.
-type Share struct {
-	Name string
-	StdK float64
-}
-
-// Budget returns each input's part of the linearised u(T); their squares add up to it.
-// It is nil where Uncertainty has none.
-func (r *Result) Budget() []Share {
-	u, ok := r.Uncertainty()
-	if !ok {
-		return nil
-	}
-	total := 0.0
-	for _, v := range r.share {
-		total += v
-	}
-	if total == 0 {
-		return nil
-	}
-	names := []string{"readings", "temperature known beforehand"}
-	for _, d := range r.e.data {
-		names = append(names, d.name)
-	}
-	for _, c := range r.e.sight.columns {
-		names = append(names, c.name)
-	}
-	var list []Share
-	for i, v := range r.share {
-		if v > 0 {
-			list = append(list, Share{names[i], u * math.Sqrt(v/total)})
-		}
-	}
-	return list
-}

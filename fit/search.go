@@ -42,6 +42,9 @@ func (w *Work) gridPoint(β float64, ψ []float64) gridPoint {
 	return gridPoint{β, chi2, slope}
 }
 
+// levelGround is what two χ² on level ground, as behind a bound, may differ by.
+const levelGround = 1e-9
+
 // closer is into how many parts grid steps beside a minimum are cut, since two minima
 // may hide in one step.
 const closer = 4
@@ -56,8 +59,8 @@ func (w *Work) findBasins(dst []basin) []basin {
 			continue
 		}
 		switch {
-		case i == 0 && g.slope > 0 && w.grid[1].chi2 >= g.chi2,
-			i == last && g.slope < 0 && w.grid[last-1].chi2 >= g.chi2:
+		case i == 0 && g.slope >= 0 && w.grid[1].chi2 >= g.chi2-levelGround,
+			i == last && g.slope <= 0 && w.grid[last-1].chi2 >= g.chi2-levelGround:
 			dst = insertBasin(dst, basin{beta: g.beta, chi2: g.chi2, atEnd: true})
 		case i < last && w.beside(i):
 			next := w.grid[i+1]

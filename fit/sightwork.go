@@ -291,8 +291,9 @@ func (w *Work) addDetectors(mean float64) {
 	}
 }
 
-// linearised takes a signal to the unit of radiance, net of the dark level.
-func (w *Work) linearised(j int, signal, std float64) (value, u float64) {
+// linearised takes a signal to the unit of radiance, net of the dark level; rounding is the
+// variance that its resolution brings, a step's rectangular distribution.
+func (w *Work) linearised(j int, signal, std float64) (value, u, rounding float64) {
 	v := &w.seen
 	c := &w.e.sight.channel[j]
 	slope := 1.0
@@ -302,7 +303,9 @@ func (w *Work) linearised(j int, signal, std float64) (value, u float64) {
 	if c.dark >= 0 {
 		signal -= v.value[c.dark]
 	}
-	return signal / v.gain[j], math.Hypot(std, c.Resolution/math.Sqrt(12)) * slope / v.gain[j]
+	f := slope / v.gain[j]
+	rounding = c.Resolution * c.Resolution / 12 * f * f
+	return signal / v.gain[j], math.Sqrt(std*std*f*f + rounding), rounding
 }
 
 // evaluateSight is evaluate's loop for models with a sight or with shared unknowns.
@@ -408,6 +411,33 @@ func (e *Estimator) spreadColumn() int {
 		return -1
 	}
 	return e.sight.inputs[e.sight.spread].column
+}
+
+// clearlyTooBright is χ² at the cold end of the range above which no temperature fits.
+const clearlyTooBright = 25
+
+// tooBright returns a *WallsError where the cold end of the range is the best temperature,
+// and the readings are still below the model.
+func (w *Work) tooBright(b basin) error {
+	e := w.e
+	if !w.sighted || b.beta != e.coldest || b.chi2 < clearlyTooBright || b.chi2 < 5*float64(e.n) {
+		return nil
+	}
+	worst, at := 0.0, -1
+	for j, m := range w.model {
+		z := (m - w.signal[j]) / math.Sqrt(w.variance(j, m))
+		if z < 0 {
+			return nil
+		}
+		if z > worst {
+			worst, at = z, j
+		}
+	}
+	if at < 0 {
+		return nil
+	}
+	v := &w.seen
+	return &WallsError{e.used[at], v.b[at] + v.c[at], w.signal[at]}
 }
 
 // surface takes channel j's reading to what it says of the surface at the last blackbody:

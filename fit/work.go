@@ -15,6 +15,7 @@ type Work struct {
 	// the reading
 	signal, std []float64 // std: a of the variance a² + shot·m + r²m²
 	shot        []float64
+	rounding    []float64 // the part of std² that a signal's resolution brings
 	rel         float64
 	log         []float64 // ln of the signals, where positive
 	haveLog     bool
@@ -71,7 +72,7 @@ type kept struct{ psi, cov []float64 }
 func (e *Estimator) NewWork() *Work {
 	f := func(n int) []float64 { return make([]float64, n) }
 	s := e.size()
-	w := &Work{e: e, signal: f(e.n), std: f(e.n), log: f(e.n), shot: f(e.n), censored: make([]int8, e.n), sighted: !e.sight.clear || e.q > 0,
+	w := &Work{e: e, signal: f(e.n), std: f(e.n), log: f(e.n), shot: f(e.n), rounding: f(e.n), censored: make([]int8, e.n), sighted: !e.sight.clear || e.q > 0,
 		black: f(e.n), rate: f(e.n), model: f(e.n), jac: f(e.n * s), residual: f(e.n),
 		grad: f(s), hess: f(s * s), psi: f(s), trial: f(s), step: f(s), chol: f(s * s), invRow: f(s * (e.p + 1)),
 		active: make([]int, 0, e.p+1), activeLow: make([]bool, 0, e.p+1), schur: f((e.p + 1) * (e.p + 1)), multiply: f(e.p + 1), rowRoom: f(s),
@@ -144,7 +145,7 @@ func (w *Work) load(r Readings) error {
 		}
 		if w.sighted {
 			w.censored[j] = e.sight.channel[j].bound(s)
-			s, u = w.linearised(j, s, u)
+			s, u, w.rounding[j] = w.linearised(j, s, u)
 			if noise.kind == perReading && r.Std == nil {
 				w.shot[j] = e.sight.channel[j].Noise.PerSignal / w.seen.gain[j]
 			} else {

@@ -5,6 +5,7 @@ import (
 	"errors"
 	"fmt"
 	"io"
+	"math"
 	"slices"
 	"strconv"
 	"strings"
@@ -164,6 +165,18 @@ func (t *table) number(column int) (float64, error) {
 		return 0, t.rowError(t.header[column], fmt.Errorf("%q is not a number", t.fields[column]))
 	}
 	return v, nil
+}
+
+// finite parses a field that must be there and finite.
+func (t *table) finite(column int) (float64, error) {
+	if t.missing(column) {
+		return 0, t.rowError(t.header[column], errors.New("the value is missing"))
+	}
+	v, err := t.number(column)
+	if err == nil && (math.IsNaN(v) || math.IsInf(v, 0)) {
+		err = t.rowError(t.header[column], fmt.Errorf("%q is not finite", t.fields[column]))
+	}
+	return v, err
 }
 
 // missingColumn is the error of a header without a column.

@@ -4,7 +4,6 @@ import (
 	"errors"
 	"fmt"
 	"io"
-	"math"
 	"strings"
 	"time"
 )
@@ -109,8 +108,8 @@ func (c *TwoColour) Next() (*Row, error) {
 		}
 	}
 	var err error
-	if r.Short, err = c.value(c.short); err == nil {
-		r.Long, err = c.value(c.long)
+	if r.Short, err = c.t.finite(c.short); err == nil {
+		r.Long, err = c.t.finite(c.long)
 	}
 	if err == nil && c.shortStd >= 0 {
 		r.HasStd = true
@@ -126,20 +125,8 @@ func (c *TwoColour) Next() (*Row, error) {
 	return r, nil
 }
 
-func (c *TwoColour) value(column int) (float64, error) {
-	t := c.t
-	if t.missing(column) {
-		return 0, t.rowError(t.header[column], errors.New("the value is missing"))
-	}
-	v, err := t.number(column)
-	if err == nil && (math.IsNaN(v) || math.IsInf(v, 0)) {
-		err = t.rowError(t.header[column], fmt.Errorf("%q is not finite", t.fields[column]))
-	}
-	return v, err
-}
-
 func (c *TwoColour) std(column int) (float64, error) {
-	v, err := c.value(column)
+	v, err := c.t.finite(column)
 	if err == nil && !(v > 0) {
 		err = c.t.rowError(c.t.header[column], fmt.Errorf("standard uncertainty %g must be positive", v))
 	}

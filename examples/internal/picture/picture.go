@@ -69,6 +69,26 @@ func AddLine(p *plot.Plot, xy plotter.XYs, c color.Color) error {
 	return nil
 }
 
+// AddNamed adds a line with its name in the legend; points are marked where they are few.
+func AddNamed(p *plot.Plot, name string, xy plotter.XYs, c color.Color) error {
+	if len(xy) == 0 {
+		return nil
+	}
+	l, err := plotter.NewLine(xy)
+	if err != nil {
+		return err
+	}
+	l.Color, l.Width = c, vg.Points(1.4)
+	if c == Mark {
+		l.Dashes = []vg.Length{vg.Points(4), vg.Points(3)}
+	}
+	p.Add(l)
+	p.Legend.Add(name, l)
+	p.Legend.Left, p.Legend.Top = false, false
+	p.Legend.Padding = vg.Points(3)
+	return nil
+}
+
 // AddBand shades between two lines over the same x.
 func AddBand(p *plot.Plot, lo, hi plotter.XYs) error {
 	if len(lo) < 2 {

@@ -227,6 +227,14 @@ type point struct{ t, chi2, beta, level, step, gain float64 }
 
 // profile fits β and ln a to the groups at the relative slope t.
 func (w *Work) profile(t float64) point {
+	if w.sighted {
+		return w.profileSight(t)
+	}
+	return w.profilePlain(t)
+}
+
+// profilePlain is profile for groups that err independently.
+func (w *Work) profilePlain(t float64) point {
 	groups := w.groups[:w.e.fast.groups]
 	var room, tilt [maxGroups]float64
 	rest, jac := room[:len(groups)], tilt[:len(groups)]
@@ -302,9 +310,6 @@ func (w *Work) mirrorPair(dst []basin, first point) (list []basin, ok bool) {
 		return dst, false
 	}
 	far := farAbove
-	if w.sighted { // what the shared unknowns could take up, the groups don't know
-		far = math.Inf(1)
-	}
 	if e.assume.Noise.unknown {
 		far *= found.chi2 / float64(e.n-e.p-1)
 	}
@@ -346,6 +351,10 @@ func (w *Work) mirrorPair(dst []basin, first point) (list []basin, ok bool) {
 // refineLinear takes a minimum of the groups to one of all channels.
 func (w *Work) refineLinear(p point, done float64) (basin, outcome) {
 	f := w.e.fast
+	if w.sighted {
+		w.profileSight(p.t)
+		w.expectedShared(w.startShared)
+	}
 	ε := math.Exp(p.level)
 	θ1 := ε * p.t / f.half
 	return w.refineFast(p.beta, ε-θ1*f.mid, θ1, done)

@@ -29,7 +29,8 @@ func nuisances(bands []*pyro.Band) Assume {
 	}
 }
 
-// TestFastSightEqualsScan compares the fast path behind a sight with the scan.
+// TestFastSightEqualsScan compares the fast path behind a sight with the scan: the same basins,
+// the lowest to 1e-5 of u, the others to 0.2 u.
 func TestFastSightEqualsScan(t *testing.T) {
 	rng := rand.New(rand.NewPCG(5, 8))
 	for _, c := range []struct {
@@ -84,7 +85,7 @@ func TestFastSightEqualsScan(t *testing.T) {
 				u := math.Sqrt(got[near].cov[0])
 				bound := 0.2 * u
 				if i == 0 && near == 0 {
-					bound = 1e-6 * u
+					bound = 1e-5 * u
 				}
 				if !b.atEnd && math.Abs(got[near].beta-b.beta) > bound {
 					t.Errorf("%s at %v: basin %d at %.9g K, the scan has %.9g K (%.2g u), χ² %.6g and %.6g", c.name, T, i, 1/got[near].beta, 1/b.beta, math.Abs(got[near].beta-b.beta)/u, got[near].chi2, b.chi2)

@@ -137,9 +137,6 @@ func (w *Work) shine(mean float64) {
 	copy(v.b, o.known)
 	copy(v.c, o.add)
 	v.self = o.self
-	for j := range v.coord {
-		v.coord[j] = 0
-	}
 	clear(v.spread)
 	for c, k := range s.optics {
 		col, by := s.inputs[k].column, &o.by[c]
@@ -151,21 +148,16 @@ func (w *Work) shine(mean float64) {
 			f.c += by.add[j]
 		}
 	}
-	for j, known := range v.b { // a known radiance is taken to have the surface's own spectrum over the band
-		v.coord[j] = known * e.coord[j]
+	if !e.lines {
+		for j, known := range v.b { // a known radiance is taken to have the surface's own spectrum over the band
+			v.coord[j] = known * e.coord[j]
+		}
 	}
 	for x := range s.sources {
 		w.addSource(x)
 	}
-	for j, b := range v.b {
-		if b > 0 {
-			v.coord[j] /= b
-		} else {
-			v.coord[j] = e.coord[j]
-		}
-	}
-	if v.spread != nil {
-		w.finishSpread()
+	if !e.lines {
+		w.finishMoments()
 	}
 	v.shape, v.byShape = 0, 0
 	if s.spread >= 0 {
@@ -206,9 +198,9 @@ func (w *Work) addSource(x int) {
 		rate := v.rate[j]
 		if src.reflected {
 			v.b[j] += f
-			v.coord[j] += f * v.mean[j]
 			if v.spread != nil {
 				μ, m := v.mean[j], &v.spread[j]
+				v.coord[j] += f * μ
 				m.v += f * (v.width[j].v + μ*μ)
 				m.s += f * (v.width[j].s + 3*μ*v.width[j].v + μ*μ*μ)
 			}
@@ -237,15 +229,18 @@ func (w *Work) addSource(x int) {
 	}
 }
 
-// finishSpread turns raw moments of what is reflected into central ones.
-func (w *Work) finishSpread() {
+// finishMoments turns sums over what is reflected into the mean coordinate and central
+// moments about it.
+func (w *Work) finishMoments() {
 	v := &w.seen
 	for j, b := range v.b {
-		m, μ := &v.spread[j], v.coord[j]
+		m := &v.spread[j]
 		if !(b > 0) {
-			*m = spread{}
+			*m, v.coord[j] = spread{}, w.e.coord[j]
 			continue
 		}
+		v.coord[j] /= b
+		μ := v.coord[j]
 		second, third := m.v/b, m.s/b
 		*m = spread{v: second - μ*μ, s: third - 3*μ*second + 2*μ*μ*μ}
 	}

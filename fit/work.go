@@ -61,6 +61,9 @@ type Work struct {
 	decrement            float64
 	kept                 [3]kept // the last basins that refineSight found
 	slot                 int
+	sights               sightGroups
+	startShared          []float64 // η from which refineSight starts
+	columns              columns
 }
 
 type gridPoint struct{ beta, chi2, slope float64 }
@@ -92,6 +95,10 @@ func (e *Estimator) NewWork() *Work {
 		w.spread = make([]spread, e.n)
 	}
 	if e.fast != nil && w.sighted {
+		w.columns = newColumns(e.n, e.p, e.q)
+		w.open()
+		w.sortColumns()
+		w.startShared, w.sights.shared = f(e.q), f(e.fast.groups*e.q)
 		for i := range w.kept {
 			w.kept[i] = kept{f(e.p + e.q), f(s * s)}
 		}
@@ -161,6 +168,9 @@ func (w *Work) load(r Readings) error {
 	}
 	if w.sighted {
 		w.shine(mean)
+		if e.fast != nil {
+			w.prepareColumns()
+		}
 	}
 	w.haveLog = false
 	if e.fast != nil {

@@ -230,7 +230,7 @@ func (c *Calibration) Read(signal, std float64) (Reading, error) {
 		return Reading{}, fmt.Errorf("%w: signal %g ± %g: it must be positive", ErrReadings, signal, std)
 	}
 	r := Reading{T: c.Curve.Temperature(signal)}
-	r.Extrapolated = r.T < c.points[0].T || r.T > c.points[len(c.points)-1].T
+	r.Extrapolated = beyond(r.T, c.points[0].T, c.points[len(c.points)-1].T)
 	u := std / c.Curve.Slope(r.T)
 	if c.hasStd() {
 		for i, s := range c.Sensitivities(r.T) {
@@ -239,4 +239,11 @@ func (c *Calibration) Read(signal, std float64) (Reading, error) {
 	}
 	r.StdK = u
 	return r, nil
+}
+
+// beyond reports whether t lies outside lo to hi, by more than the rounding of a reading at
+// one of them.
+func beyond(t, lo, hi pyro.Temperature) bool {
+	const rounding = 1e-10
+	return t < lo*(1-rounding) || t > hi*(1+rounding)
 }

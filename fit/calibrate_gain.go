@@ -146,13 +146,12 @@ func (c *GainCalibration) Read(signal, std float64) (Reading, error) {
 	if err := c.band.Check(t); err != nil {
 		return Reading{}, fmt.Errorf("%w: signal %g: %w", ErrReadings, signal, err)
 	}
-	r := Reading{T: t, Extrapolated: true}
+	r := Reading{T: t}
 	lo, hi := c.points[0].T, c.points[0].T
 	for _, p := range c.points {
 		lo, hi = min(lo, p.T), max(hi, p.T)
 	}
-	const rounding = 1e-12 // of a reading at a point itself
-	r.Extrapolated = t < lo*(1-rounding) || t > hi*(1+rounding)
+	r.Extrapolated = beyond(t, lo, hi)
 	r.StdK = float64(t) / c.band.LogSlope(c.thermodynamic(t)) * math.Hypot(std/signal, c.Std/c.Gain)
 	return r, nil
 }

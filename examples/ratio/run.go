@@ -8,8 +8,6 @@ import (
 	"fmt"
 	"io"
 	"math"
-	"strconv"
-	"strings"
 
 	"candent/examples/internal/show"
 	"candent/fit"
@@ -26,26 +24,6 @@ type job struct {
 	json                        bool
 }
 
-// normal95 is half the width of a 95 % interval in standard uncertainties.
-const normal95 = 1.959963984540054
-
-// band parses N or LO-HI in nm.
-func band(flag, text string) (*pyro.Band, error) {
-	lo, hi, flat := strings.Cut(text, "-")
-	a, err := strconv.ParseFloat(lo, 64)
-	b := a
-	if err == nil && flat {
-		b, err = strconv.ParseFloat(hi, 64)
-	}
-	if err != nil {
-		return nil, fmt.Errorf("-%s %q: a wavelength in nm such as 900, or a band such as 850-950", flag, text)
-	}
-	if !flat {
-		return pyro.Line(pyro.Wavelength(a) * pyro.Nanometre)
-	}
-	return pyro.FlatTop(pyro.Wavelength(a)*pyro.Nanometre, pyro.Wavelength(b)*pyro.Nanometre)
-}
-
 // run does the job and returns how many rows could not be estimated.
 func run(j job, stdin io.Reader, stdout io.Writer, progress *show.Progress) (failed int, err error) {
 	if j.in == "" && j.short == "" && j.long == "" {
@@ -59,10 +37,10 @@ func run(j job, stdin io.Reader, stdout io.Writer, progress *show.Progress) (fai
 	if !(j.ratio > 0) || !(j.ratioStd >= 0) || math.IsInf(j.ratio, 0) || math.IsInf(j.ratioStd, 0) {
 		return 0, fmt.Errorf("-emissivity-ratio %g, std %g: the first must be positive, the second not negative", j.ratio, j.ratioStd)
 	}
-	if e.short, err = band("short-nm", j.short); err != nil {
+	if e.short, err = show.Band("short-nm", j.short); err != nil {
 		return 0, err
 	}
-	if e.long, err = band("long-nm", j.long); err != nil {
+	if e.long, err = show.Band("long-nm", j.long); err != nil {
 		return 0, err
 	}
 	if e.pair, err = widestPair(e.short, e.long); err != nil {
@@ -104,7 +82,7 @@ func run(j job, stdin io.Reader, stdout io.Writer, progress *show.Progress) (fai
 		}
 		if err != nil {
 			failed++
-			err = writeError(out, j.json, label, err)
+			err = show.WriteError(out, j.json, label, err)
 		} else {
 			if j.plot != "" {
 				drawn.add(row, count, res, unit)
@@ -189,10 +167,10 @@ func (e *estimator) estimate(row *readings.Row) (estimate, error) {
 	rel := math.Sqrt(us*us + ul*ul + ux*ux)
 	u := e.pair.Uncertainty(t, rel, 0)
 	res.std = &u
-	if lo, err := e.pair.Temperature(ratio*math.Exp(-normal95*rel), e.ratio); err == nil {
+	if lo, err := e.pair.Temperature(ratio*math.Exp(-show.Normal95*rel), e.ratio); err == nil {
 		res.lo = &lo
 	}
-	if hi, err := e.pair.Temperature(ratio*math.Exp(normal95*rel), e.ratio); err == nil {
+	if hi, err := e.pair.Temperature(ratio*math.Exp(show.Normal95*rel), e.ratio); err == nil {
 		res.hi = &hi
 	}
 	if e.pair.LogSlope(t) < 0 {
@@ -231,17 +209,6 @@ func writeText(out io.Writer, label string, r estimate, unit show.Unit) error {
 	return err
 }
 
-func writeError(out io.Writer, asJSON bool, label string, err error) error {
-	if asJSON {
-		return json.NewEncoder(out).Encode(struct {
-			Label string `json:"label"`
-			Error string `json:"error"`
-		}{label, err.Error()})
-	}
-	_, err = fmt.Fprintf(out, "%-22s not estimated: %v\n", label, err)
-	return err
-}
-
 func writeJSON(out io.Writer, row *readings.Row, r estimate) error {
 	line := struct {
 		Time      *float64     `json:"time_s,omitempty"`
@@ -252,34 +219,17 @@ func writeJSON(out io.Writer, row *readings.Row, r estimate) error {
 		Amplitude float64      `json:"amplitude"`
 		AmpStd    *float64     `json:"amplitude_std,omitempty"`
 		Notes     []string     `json:"notes"`
-	}{T: round(float64(r.t)), Std: rounded(r.std), Amplitude: round(r.amplitude), AmpStd: rounded(r.ampStd), Notes: r.notes}
+	}{T: show.Round(float64(r.t)), Std: show.Rounded(r.std), Amplitude: show.Round(r.amplitude), AmpStd: show.Rounded(r.ampStd), Notes: r.notes}
 	if row.HasTimeS {
 		line.Time = &row.TimeS
 	} else {
 		line.Label = &row.Label
 	}
 	if r.std != nil {
-		line.Interval = &[2]*float64{rounded((*float64)(r.lo)), rounded((*float64)(r.hi))}
+		line.Interval = &[2]*float64{show.Rounded((*float64)(r.lo)), show.Rounded((*float64)(r.hi))}
 	}
 	if line.Notes == nil {
 		line.Notes = []string{}
 	}
 	return json.NewEncoder(out).Encode(line)
-}
-
-// round keeps ten significant digits, more than any reading has.
-func round(v float64) float64 {
-	r, err := strconv.ParseFloat(strconv.FormatFloat(v, 'g', 10, 64), 64)
-	if err != nil {
-		return v
-	}
-	return r
-}
-
-func rounded(v *float64) *float64 {
-	if v == nil {
-		return nil
-	}
-	r := round(*v)
-	return &r
 }

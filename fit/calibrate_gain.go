@@ -131,6 +131,11 @@ func (c *GainCalibration) Departures() []float64 {
 	return out
 }
 
+// Signal returns the signal of a blackbody at t.
+func (c *GainCalibration) Signal(t pyro.Temperature) float64 {
+	return c.Gain * c.band.Radiance(c.thermodynamic(t))
+}
+
 func (c *GainCalibration) temperature(signal float64) pyro.Temperature {
 	return c.band.RadianceTemperature(signal/c.Gain) / pyro.Temperature(c.scale)
 }

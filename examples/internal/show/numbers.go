@@ -59,3 +59,21 @@ func WriteError(out io.Writer, asJSON bool, label string, err error) error {
 	_, err = fmt.Fprintf(out, "%-22s not estimated: %v\n", label, err)
 	return err
 }
+
+// Resolution returns the step of a number as it was written, 0.1 for 12.5, and 0 for one
+// with an exponent.
+func Resolution(text string) float64 {
+	if strings.ContainsAny(text, "eE") {
+		return 0
+	}
+	step := 1.0
+	if at := strings.LastIndexAny(text, ".,"); at >= 0 {
+		for range len(text) - at - 1 {
+			step /= 10
+		}
+	}
+	return step
+}
+
+// Rectangular is the standard deviation of a step of 1, 1/√12.
+const Rectangular = 0.28867513459481287

@@ -43,7 +43,7 @@ func run(j job, stdin io.Reader, stdout io.Writer, progress *show.Progress) (fai
 	if e.long, err = show.Band("long-nm", j.long); err != nil {
 		return 0, err
 	}
-	if e.pair, err = widestPair(e.short, e.long); err != nil {
+	if e.pair, err = show.WidestPair(e.short, e.long); err != nil {
 		return 0, err
 	}
 	in, label, err := show.Open(j.in, demo, stdin)
@@ -97,19 +97,6 @@ func run(j job, stdin io.Reader, stdout io.Writer, progress *show.Progress) (fai
 			return failed, err
 		}
 	}
-}
-
-// widestPair compiles the pair from the lowest temperature at which the bands have a
-// radiance to speak of, up to the end of the range.
-func widestPair(short, long *pyro.Band) (*pyro.Pair, error) {
-	var err error
-	for lo := pyro.BandMin; lo < 1000; lo += 50 {
-		var p *pyro.Pair
-		if p, err = pyro.NewPair(short, long, lo, pyro.BandMax); err == nil {
-			return p, nil
-		}
-	}
-	return nil, err
 }
 
 // toMicrometre returns what takes the log's unit to W m⁻² sr⁻¹ µm⁻¹; 1 where it is another.

@@ -38,7 +38,7 @@ const (
 )
 
 func (s LoopState) String() string {
-	return [...]string{"undefined", "measuring", "at low end", "at high end", "failure (low current)", "failure (high current)"}[s]
+	return [...]string{"neither measuring nor failure", "measuring", "at low end", "at high end", "failure (low current)", "failure (high current)"}[s]
 }
 
 // Currents in mA.

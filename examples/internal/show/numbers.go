@@ -30,6 +30,19 @@ func Band(flag, text string) (*pyro.Band, error) {
 	return pyro.FlatTop(pyro.Wavelength(a)*pyro.Nanometre, pyro.Wavelength(b)*pyro.Nanometre)
 }
 
+// WidestPair compiles the pair from the lowest temperature at which the bands have a
+// radiance to speak of, up to the end of the range.
+func WidestPair(short, long *pyro.Band) (*pyro.Pair, error) {
+	var err error
+	for lo := pyro.BandMin; lo < 1000; lo += 50 {
+		var p *pyro.Pair
+		if p, err = pyro.NewPair(short, long, lo, pyro.BandMax); err == nil {
+			return p, nil
+		}
+	}
+	return nil, err
+}
+
 // Round keeps ten significant digits, more than any reading has.
 func Round(v float64) float64 {
 	r, err := strconv.ParseFloat(strconv.FormatFloat(v, 'g', 10, 64), 64)

@@ -41,7 +41,10 @@ type Certificate struct {
 // source adds. With Calibrate they give the curve that turns any later indication, through
 // detector.Indicator.Radiance with its settings then, into a temperature.
 //
-// What the size of the source adds is taken as independent between rows. It is zero in rows
+// U is taken as independent between rows. Certificates don't say how much of it all rows
+// share (the reference's own calibration, its emissivity); averaging over rows makes that part
+// too small by up to √rows, so carry it on as an input of the reading where it is known. What
+// the size of the source adds is taken as independent too. It is zero in rows
 // of the common aperture; the step from there to the target is an input of the reading. A
 // bad row is a *CalibrationError.
 func (c Certificate) Points() ([]CalibrationPoint, error) {

@@ -19,7 +19,7 @@ type table struct {
 	unit    string              // of the signal
 	shown   *detector.Indicator // of a certificate: what turns an indication into a signal
 	noStd   bool                // no point has an uncertainty
-	assumed string              // what the table doesn't say, or ""
+	assumed []string            // what the table doesn't say
 }
 
 // wholeRange is where an indicator of unknown range may read.
@@ -111,8 +111,9 @@ func (t *table) readCertificate(log *readings.Log, name string, band *pyro.Band)
 		return fmt.Errorf("%s: column %s: expanded uncertainties are in K: U_K", name, expanded.Name)
 	}
 	setting := log.Column("emissivity_setting")
+	t.assumed = append(t.assumed, "the rows' uncertainties are taken as independent: what they share is larger on the curve than this")
 	if !setting.Found {
-		t.assumed = "the certificate states no emissivity_setting: taken as 1"
+		t.assumed = append(t.assumed, "the certificate states no emissivity_setting: taken as 1")
 	}
 	d := wholeRange(band, 1)
 	t.unit, t.shown = "W/(m² sr m) of its nominal band", &d

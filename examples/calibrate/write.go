@@ -84,8 +84,8 @@ func writeCurve(out io.Writer, c *calibrated, unit show.Unit) error {
 	default:
 		fmt.Fprintf(&b, "  exact through the points: nothing is left to test it by\n")
 	}
-	if c.assumed != "" {
-		fmt.Fprintf(&b, "  %s\n", c.assumed)
+	for _, note := range c.assumed {
+		fmt.Fprintf(&b, "  %s\n", note)
 	}
 	fmt.Fprintf(&b, "\n%-12s %9s %12s %9s %11s\n", "point", "T / "+unit.String(), "signal", "u / K", "read − T / K")
 	for i, d := range c.curve.Departures() {
@@ -232,9 +232,7 @@ func writeCurveJSON(out io.Writer, c *calibrated) error {
 	if !c.noStd && dof > 0 {
 		line.ChiSquared = rounded(chi2)
 	}
-	if c.assumed != "" {
-		line.Notes = append(line.Notes, c.assumed)
-	}
+	line.Notes = append(line.Notes, c.assumed...)
 	for i, d := range c.curve.Departures() {
 		p := pointJSON{Label: c.labels[i], T: show.Round(float64(c.points[i].T)), Signal: show.Round(c.points[i].Signal), Departure: show.Round(d)}
 		if !c.noStd {

@@ -86,3 +86,39 @@ func TestLog(t *testing.T) {
 		t.Errorf("no time: %v", err)
 	}
 }
+
+// FuzzLog: a row is read or its error names the table; reading ends.
+func FuzzLog(f *testing.F) {
+	f.Add("label,temperature_C,signal_mV\na,700,1\nb,,2\n")
+	f.Add("time_s;current_mA\n1;12,5\n2;NaN\n")
+	f.Add("\ufefftime\ttemperature_K\r\nx\t\"9\"\r\n#\n1\n")
+	f.Fuzz(func(t *testing.T, text string) {
+		log, err := readings.NewLog(strings.NewReader(text), readings.Settings{Name: "fuzz"})
+		if err != nil {
+			return
+		}
+		c, signal := log.Column("temperature"), log.Column("signal")
+		for range strings.Count(text, "\n") + 2 {
+			row, err := log.Next()
+			if errors.Is(err, io.EOF) {
+				return
+			}
+			var bad *readings.RowError
+			if err != nil {
+				if !errors.As(err, &bad) {
+					t.Fatalf("%v", err)
+				}
+				continue
+			}
+			if c.Found {
+				if T, err := row.Temperature(c); err != nil && !errors.As(err, &bad) || err == nil && math.IsNaN(float64(T)) {
+					t.Fatalf("%v, %v", T, err)
+				}
+			}
+			if v, err := row.Optional(signal, 1); err == nil && (math.IsNaN(v) || math.IsInf(v, 0)) {
+				t.Fatalf("%g", v)
+			}
+		}
+		t.Fatal("it does not end")
+	})
+}

@@ -1,7 +1,6 @@
 package fit
 
 import (
-	"errors"
 	"fmt"
 	"math"
 	"slices"
@@ -10,9 +9,6 @@ import (
 	"candent/pyro"
 	"candent/pyro/detector"
 )
-
-// ErrCalibration is what errors of Calibrate wrap.
-var ErrCalibration = errors.New("fit: calibration")
 
 // CalibrationPoint is a signal at a known temperature. StdK and Std are standard
 // uncertainties of the temperature (K) and of the signal, independent of each other and of
@@ -60,30 +56,16 @@ func Calibrate(points []CalibrationPoint, band *pyro.Band) (*Calibration, error)
 }
 
 func (c *Calibration) check(band *pyro.Band) error {
-	if len(c.points) == 0 {
-		return fmt.Errorf("%w: no points", ErrCalibration)
+	if err := checkPoints(c.points); err != nil {
+		return err
 	}
 	if len(c.points) < 3 && band == nil {
 		return fmt.Errorf("%w: %d points: with fewer than three the band is needed, to predict A and B from", ErrCalibration, len(c.points))
 	}
-	with := 0
-	for i, p := range c.points {
-		switch {
-		case !(p.T >= 20 && p.T <= 20000):
-			return fmt.Errorf("%w: point %d: temperature %v; is it in °C?", ErrCalibration, i, p.T)
-		case !(p.Signal > 0) || math.IsInf(p.Signal, 0):
-			return fmt.Errorf("%w: point %d: signal %g must be positive: subtract the dark level first", ErrCalibration, i, p.Signal)
-		case !(p.StdK >= 0) || !(p.Std >= 0) || math.IsInf(p.StdK, 0) || math.IsInf(p.Std, 0):
-			return fmt.Errorf("%w: point %d: standard uncertainties %g K and %g must be finite and not negative", ErrCalibration, i, p.StdK, p.Std)
-		case i > 0 && (p.T <= c.points[i-1].T || p.Signal <= c.points[i-1].Signal):
-			return fmt.Errorf("%w: point %d: %v with signal %g does not rise above %v with %g", ErrCalibration, i, p.T, p.Signal, c.points[i-1].T, c.points[i-1].Signal)
+	for i, p := range c.points[1:] {
+		if before := c.points[i]; p.T <= before.T || p.Signal <= before.Signal {
+			return badPoint(i+1, "%v with signal %g does not rise above %v with %g: sort the points; drop one that contradicts", p.T, p.Signal, before.T, before.Signal)
 		}
-		if p.StdK > 0 || p.Std > 0 {
-			with++
-		}
-	}
-	if with > 0 && with < len(c.points) {
-		return fmt.Errorf("%w: %d of %d points have an uncertainty: give one for each, or for none", ErrCalibration, with, len(c.points))
 	}
 	return nil
 }
@@ -177,10 +159,43 @@ func (c *Calibration) ChiSquared() (chi2 float64, degreesOfFreedom int) {
 	return c.chi2, len(c.points) - c.free
 }
 
+// Departures returns by how much the temperature read at each point's signal lies above the
+// point's own, in K.
+func (c *Calibration) Departures() []float64 {
+	out := make([]float64, len(c.points))
+	for i, p := range c.points {
+		out[i] = float64(c.Curve.Temperature(p.Signal) - p.T)
+	}
+	return out
+}
+
+// Covariance returns the covariance of (C, A, B): the first relative to C, A in m, B in m K.
+// Where C alone was fitted, the rows of A and B are zero: how far their prediction from the
+// band is off is not in it. ok is false where the points have no uncertainty.
+//
+// The three are correlated to many digits. Carry the whole matrix, with
+//
+//	∂T/∂ln C = −c₂/(A l²)·(C/S)/(1 + C/S),   ∂T/∂A = −T/A,   ∂T/∂B = −1/A,   l = ln(1 + C/S)
+func (c *Calibration) Covariance() (cov [3][3]float64, ok bool) {
+	if !c.hasStd() {
+		return cov, false
+	}
+	scale := [3]float64{1, c.a0, c.a0 * c.t0}
+	for i := range c.free {
+		for k := range c.free {
+			cov[i][k] = scale[i] * scale[k] * c.cov[i*c.free+k]
+		}
+	}
+	return cov, true
+}
+
+// hasStd reports whether the points have uncertainties.
+func (c *Calibration) hasStd() bool { return c.points[0].StdK > 0 || c.points[0].Std > 0 }
+
 // Sensitivities returns ∂T/∂Tᵢ of the temperature t read from the curve to the points'
 // temperatures. Through three points they add to 1: a common shift shifts every reading.
 func (c *Calibration) Sensitivities(t pyro.Temperature) []float64 {
-	p := int(math.Sqrt(float64(len(c.cov))))
+	p := c.free
 	g := make([]float64, p)
 	c.gradient(g, c.Curve.Signal(t))
 	// gᵀ(JᵀJ)⁻¹Jᵀ
@@ -215,13 +230,20 @@ func (c *Calibration) Read(signal, std float64) (Reading, error) {
 		return Reading{}, fmt.Errorf("%w: signal %g ± %g: it must be positive", ErrReadings, signal, std)
 	}
 	r := Reading{T: c.Curve.Temperature(signal)}
-	r.Extrapolated = r.T < c.points[0].T || r.T > c.points[len(c.points)-1].T
+	r.Extrapolated = beyond(r.T, c.points[0].T, c.points[len(c.points)-1].T)
 	u := std / c.Curve.Slope(r.T)
-	if c.points[0].StdK > 0 || c.points[0].Std > 0 {
+	if c.hasStd() {
 		for i, s := range c.Sensitivities(r.T) {
 			u = math.Hypot(u, s*c.std[i])
 		}
 	}
 	r.StdK = u
 	return r, nil
+}
+
+// beyond reports whether t lies outside lo to hi, by more than the rounding of a reading at
+// one of them.
+func beyond(t, lo, hi pyro.Temperature) bool {
+	const rounding = 1e-10
+	return t < lo*(1-rounding) || t > hi*(1+rounding)
 }

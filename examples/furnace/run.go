@@ -7,7 +7,6 @@ import (
 	"errors"
 	"fmt"
 	"io"
-	"math"
 
 	"candent/emissivity"
 	"candent/examples/internal/show"
@@ -32,7 +31,7 @@ type job struct {
 type estimators struct{ right, blind *fit.Estimator }
 
 func compile(j job) (e estimators, err error) {
-	band, err := show.ParseBand("band-nm", j.band)
+	band, err := show.Band("band-nm", j.band)
 	if err != nil {
 		return e, err
 	}
@@ -81,6 +80,23 @@ func (e estimators) read(label string, signal, wall, exposure float64) (reading,
 	return r, nil
 }
 
+// readRow takes a row's numbers and reads the load by them.
+func (e estimators) readRow(row *readings.LogRow, signal, wall, exposure readings.Column) (reading, error) {
+	s, err := row.Number(signal)
+	if err != nil {
+		return reading{}, err
+	}
+	w, err := row.Temperature(wall)
+	if err != nil {
+		return reading{}, err
+	}
+	x, err := row.Optional(exposure, 1)
+	if err != nil {
+		return reading{}, err
+	}
+	return e.read(row.Label, s, float64(w), x)
+}
+
 // run does the job and returns how many rows could not be estimated.
 func run(j job, stdin io.Reader, stdout io.Writer) (failed int, err error) {
 	unit, err := show.ParseUnit(j.unit)
@@ -96,13 +112,19 @@ func run(j job, stdin io.Reader, stdout io.Writer) (failed int, err error) {
 		return 0, err
 	}
 	defer in.Close()
-	log, err := readings.NewLog(in, readings.Settings{Name: name}, []string{"signal"}, []string{"wall_K", "wall_C", "exposure"})
+	log, err := readings.NewLog(in, readings.Settings{Name: name})
 	if err != nil {
 		return 0, err
 	}
-	if log.Has("wall_K") == log.Has("wall_C") {
-		return 0, fmt.Errorf("%s: one of the columns wall_K and wall_C must be there", name)
+	signal, err := log.Require("signal")
+	if err != nil {
+		return 0, err
 	}
+	wall, err := log.RequireTemperature("wall")
+	if err != nil {
+		return 0, err
+	}
+	exposure := log.Column("exposure")
 	out := bufio.NewWriter(stdout)
 	defer func() { err = errors.Join(err, out.Flush()) }()
 	if !j.json {
@@ -118,21 +140,14 @@ func run(j job, stdin io.Reader, stdout io.Writer) (failed int, err error) {
 		var r reading
 		if err == nil {
 			label = row.Label
-			wall, exposure := row.Values[1], row.Values[3]
-			if log.Has("wall_C") {
-				wall = float64(pyro.Celsius(row.Values[2]))
-			}
-			if math.IsNaN(exposure) {
-				exposure = 1
-			}
-			r, err = e.read(label, row.Values[0], wall, exposure)
+			r, err = e.readRow(row, signal, wall, exposure)
 		} else if bad := (*readings.RowError)(nil); errors.As(err, &bad) {
 			label = bad.ID
 		}
 		switch {
 		case err != nil:
 			failed++
-			err = writeError(out, j.json, label, err)
+			err = show.WriteError(out, j.json, label, err)
 		case j.json:
 			all = append(all, r)
 			err = writeJSON(out, r)
@@ -157,7 +172,7 @@ func writeHead(out io.Writer, j job, unit show.Unit) {
 	fmt.Fprintf(out, "Load seen in a furnace, band %s nm\n", j.band)
 	fmt.Fprintf(out, "Assumed: emissivity %g ± %g, an enclosure as hot as its wall reading ± %g K, window %g ± %g,\n", j.ε, j.εStd, j.wallStd, j.window, j.windowStd)
 	fmt.Fprintf(out, "gain ± %.2g %%, noise %.2g %%, a load that is opaque and fills the field.\n\n", 100*j.gainRel, 100*j.noise)
-	fmt.Fprintf(out, "%-12s %9s   %9s %7s   %-24s %s\n", "row", "wall/"+unit.String(), "load/"+unit.String(), "u/K", "95 % interval/"+unit.String(), "walls ignored/"+unit.String())
+	fmt.Fprintf(out, "%-22s %9s   %9s %7s   %-24s %s\n", "row", "wall/"+unit.String(), "load/"+unit.String(), "u/K", "95 % interval/"+unit.String(), "walls ignored/"+unit.String())
 }
 
 func writeText(out io.Writer, r reading, unit show.Unit) error {
@@ -183,7 +198,7 @@ func writeText(out io.Writer, r reading, unit show.Unit) error {
 	if r.blind != nil {
 		blind = fmt.Sprintf("%.0f", unit.In(*r.blind))
 	}
-	_, err := fmt.Fprintf(out, "%-12s %9.0f   %9s %7s   %-24s %s\n", r.label, unit.In(r.wall), load, u, interval, blind)
+	_, err := fmt.Fprintf(out, "%-22s %9.0f   %9s %7s   %-24s %s\n", r.label, unit.In(r.wall), load, u, interval, blind)
 	return err
 }
 
@@ -228,17 +243,6 @@ func trimRight(s string) string {
 	return s
 }
 
-func writeError(out io.Writer, asJSON bool, label string, err error) error {
-	if asJSON {
-		return json.NewEncoder(out).Encode(struct {
-			Label string `json:"label"`
-			Error string `json:"error"`
-		}{label, err.Error()})
-	}
-	_, err = fmt.Fprintf(out, "%-12s not estimated: %v\n", label, err)
-	return err
-}
-
 func writeJSON(out io.Writer, r reading) error {
 	type share struct {
 		Input string  `json:"input"`
@@ -257,30 +261,32 @@ func writeJSON(out io.Writer, r reading) error {
 		Notes         []string    `json:"notes"`
 	}{Label: r.label, State: r.right.State().String(), Budget: []share{}, Notes: r.right.Notes()}
 	if t, state := r.right.Temperature(); state == fit.Determined {
-		line.T = show.Rounded(float64(t))
+		line.T = rounded(float64(t))
 	}
 	if u, ok := r.right.Uncertainty(); ok {
-		line.Std = show.Rounded(u)
+		line.Std = rounded(u)
 	}
 	if iv, ok := r.right.Interval(); ok {
 		if !iv.LowOpen {
-			line.Interval[0] = show.Rounded(float64(iv.Low))
+			line.Interval[0] = rounded(float64(iv.Low))
 		}
 		if !iv.HighOpen {
-			line.Interval[1] = show.Rounded(float64(iv.High))
+			line.Interval[1] = rounded(float64(iv.High))
 		}
 	}
 	if a, b, ok := r.right.Split(); ok {
-		line.Repeatability, line.Shared = show.Rounded(a), show.Rounded(b)
+		line.Repeatability, line.Shared = rounded(a), rounded(b)
 	}
 	for _, s := range r.right.Budget() {
-		line.Budget = append(line.Budget, share{s.Name, *show.Rounded(s.StdK)})
+		line.Budget = append(line.Budget, share{s.Name, show.Round(s.StdK)})
 	}
 	if r.blind != nil {
-		line.Ignored = show.Rounded(float64(*r.blind))
+		line.Ignored = rounded(float64(*r.blind))
 	}
 	if line.Notes == nil {
 		line.Notes = []string{}
 	}
 	return json.NewEncoder(out).Encode(line)
 }
+
+func rounded(v float64) *float64 { return show.Rounded(&v) }

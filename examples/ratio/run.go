@@ -24,9 +24,6 @@ type job struct {
 	json                        bool
 }
 
-// normal95 is half the width of a 95 % interval in standard uncertainties.
-const normal95 = 1.959963984540054
-
 // run does the job and returns how many rows could not be estimated.
 func run(j job, stdin io.Reader, stdout io.Writer, progress *show.Progress) (failed int, err error) {
 	if j.in == "" && j.short == "" && j.long == "" {
@@ -40,13 +37,13 @@ func run(j job, stdin io.Reader, stdout io.Writer, progress *show.Progress) (fai
 	if !(j.ratio > 0) || !(j.ratioStd >= 0) || math.IsInf(j.ratio, 0) || math.IsInf(j.ratioStd, 0) {
 		return 0, fmt.Errorf("-emissivity-ratio %g, std %g: the first must be positive, the second not negative", j.ratio, j.ratioStd)
 	}
-	if e.short, err = show.ParseBand("short-nm", j.short); err != nil {
+	if e.short, err = show.Band("short-nm", j.short); err != nil {
 		return 0, err
 	}
-	if e.long, err = show.ParseBand("long-nm", j.long); err != nil {
+	if e.long, err = show.Band("long-nm", j.long); err != nil {
 		return 0, err
 	}
-	if e.pair, err = widestPair(e.short, e.long); err != nil {
+	if e.pair, err = show.WidestPair(e.short, e.long); err != nil {
 		return 0, err
 	}
 	in, label, err := show.Open(j.in, demo, stdin)
@@ -85,7 +82,7 @@ func run(j job, stdin io.Reader, stdout io.Writer, progress *show.Progress) (fai
 		}
 		if err != nil {
 			failed++
-			err = writeError(out, j.json, label, err)
+			err = show.WriteError(out, j.json, label, err)
 		} else {
 			if j.plot != "" {
 				drawn.add(row, count, res, unit)
@@ -100,19 +97,6 @@ func run(j job, stdin io.Reader, stdout io.Writer, progress *show.Progress) (fai
 			return failed, err
 		}
 	}
-}
-
-// widestPair compiles the pair from the lowest temperature at which the bands have a
-// radiance to speak of, up to the end of the range.
-func widestPair(short, long *pyro.Band) (*pyro.Pair, error) {
-	var err error
-	for lo := pyro.BandMin; lo < 1000; lo += 50 {
-		var p *pyro.Pair
-		if p, err = pyro.NewPair(short, long, lo, pyro.BandMax); err == nil {
-			return p, nil
-		}
-	}
-	return nil, err
 }
 
 // toMicrometre returns what takes the log's unit to W m⁻² sr⁻¹ µm⁻¹; 1 where it is another.
@@ -170,10 +154,10 @@ func (e *estimator) estimate(row *readings.Row) (estimate, error) {
 	rel := math.Sqrt(us*us + ul*ul + ux*ux)
 	u := e.pair.Uncertainty(t, rel, 0)
 	res.std = &u
-	if lo, err := e.pair.Temperature(ratio*math.Exp(-normal95*rel), e.ratio); err == nil {
+	if lo, err := e.pair.Temperature(ratio*math.Exp(-show.Normal95*rel), e.ratio); err == nil {
 		res.lo = &lo
 	}
-	if hi, err := e.pair.Temperature(ratio*math.Exp(normal95*rel), e.ratio); err == nil {
+	if hi, err := e.pair.Temperature(ratio*math.Exp(show.Normal95*rel), e.ratio); err == nil {
 		res.hi = &hi
 	}
 	if e.pair.LogSlope(t) < 0 {
@@ -212,17 +196,6 @@ func writeText(out io.Writer, label string, r estimate, unit show.Unit) error {
 	return err
 }
 
-func writeError(out io.Writer, asJSON bool, label string, err error) error {
-	if asJSON {
-		return json.NewEncoder(out).Encode(struct {
-			Label string `json:"label"`
-			Error string `json:"error"`
-		}{label, err.Error()})
-	}
-	_, err = fmt.Fprintf(out, "%-22s not estimated: %v\n", label, err)
-	return err
-}
-
 func writeJSON(out io.Writer, row *readings.Row, r estimate) error {
 	line := struct {
 		Time      *float64     `json:"time_s,omitempty"`
@@ -233,26 +206,17 @@ func writeJSON(out io.Writer, row *readings.Row, r estimate) error {
 		Amplitude float64      `json:"amplitude"`
 		AmpStd    *float64     `json:"amplitude_std,omitempty"`
 		Notes     []string     `json:"notes"`
-	}{T: show.Round(float64(r.t)), Amplitude: show.Round(r.amplitude), Notes: r.notes}
+	}{T: show.Round(float64(r.t)), Std: show.Rounded(r.std), Amplitude: show.Round(r.amplitude), AmpStd: show.Rounded(r.ampStd), Notes: r.notes}
 	if row.HasTimeS {
 		line.Time = &row.TimeS
 	} else {
 		line.Label = &row.Label
 	}
 	if r.std != nil {
-		line.Std, line.AmpStd = show.Rounded(*r.std), show.Rounded(*r.ampStd)
-		line.Interval = &[2]*float64{roundedEnd(r.lo), roundedEnd(r.hi)}
+		line.Interval = &[2]*float64{show.Rounded((*float64)(r.lo)), show.Rounded((*float64)(r.hi))}
 	}
 	if line.Notes == nil {
 		line.Notes = []string{}
 	}
 	return json.NewEncoder(out).Encode(line)
-}
-
-// roundedEnd is an end of an interval, nil where it is open.
-func roundedEnd(t *pyro.Temperature) *float64 {
-	if t == nil {
-		return nil
-	}
-	return show.Rounded(float64(*t))
 }

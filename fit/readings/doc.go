@@ -25,6 +25,12 @@
 //	short, long             with any unit suffix, the same for both: short_mV, long_mV
 //	short_std, long_std     optional, the suffix last: short_std_mV
 //
+// # Other logs
+//
+// Calibration points, certificates and what indicators wrote have columns that the caller
+// looks up by name (NewLog), with units as suffixes: temperature_C, temperature_std_K,
+// signal_mV, current_mA; beside them time_s, time or label.
+//
 // # Common to all
 //
 // The separator is a comma, a semicolon or a tab, found in the header; the decimal mark a

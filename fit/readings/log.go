@@ -4,55 +4,82 @@ import (
 	"errors"
 	"fmt"
 	"io"
-	"math"
+	"strings"
+
+	"candent/pyro"
 )
 
-// Entry is one row of a log. It is reused by the next call of Next.
-type Entry struct {
-	Line   int
-	Label  string    // of the column label, time_s or time; else the line's number
-	Values []float64 // in the order of the columns asked for; NaN where an optional one is absent
-}
-
-// Log reads a table of named numbers row by row: a signal, a wall temperature, an exposure.
+// Log reads a table row by row whose columns the caller looks up: calibration points, a
+// certificate, what an indicator wrote.
 type Log struct {
-	t       *table
-	label   int
-	columns []int
-	names   []string
-	entry   Entry
-	done    bool
+	t     *table
+	label int
+	row   LogRow
+	done  bool
 }
 
-// NewLog reads the header of a log. The columns needed must be there, the optional ones may.
-func NewLog(r io.Reader, set Settings, needed, optional []string) (*Log, error) {
+// LogRow is one row of a Log. It is reused by the next call of Next.
+type LogRow struct {
+	Line     int
+	Label    string // the text of time_s, time or label, the first of these columns that is there
+	TimeS    float64
+	HasTimeS bool // the column is time_s
+	t        *table
+}
+
+// Column is a column of a Log. One that a table doesn't have is not Found.
+type Column struct {
+	Name  string
+	Unit  string // the suffix of the name behind its last part: K in temperature_std_K
+	Found bool
+	index int
+}
+
+// NewLog reads the header of a table.
+func NewLog(r io.Reader, set Settings) (*Log, error) {
 	t, err := newTable(r, set)
 	if err != nil {
 		return nil, err
 	}
 	l := &Log{t: t, label: -1}
-	for _, name := range []string{"label", "time_s", "time"} {
+	for _, name := range []string{"time_s", "time", "label"} {
 		if at := t.column(name); at >= 0 && l.label < 0 {
 			l.label = at
 		}
 	}
-	for i, name := range append(append([]string{}, needed...), optional...) {
-		at := t.column(name)
-		if at < 0 && i < len(needed) {
-			return nil, t.missingColumn(name)
-		}
-		l.columns, l.names = append(l.columns, at), append(l.names, name)
-	}
-	l.entry.Values = make([]float64, len(l.columns))
 	return l, nil
 }
 
-// Has reports whether the table has the column.
-func (l *Log) Has(name string) bool { return l.t.column(name) >= 0 }
+// Column finds the column name or name_unit, but not name_std.
+func (l *Log) Column(name string) Column {
+	i, suffix, ok := l.t.withSuffix(name)
+	if !ok {
+		return Column{Name: name}
+	}
+	return Column{Name: l.t.header[i], Unit: strings.TrimPrefix(suffix, "_"), Found: true, index: i}
+}
 
-// Next returns the next row, io.EOF behind the last, or a *RowError, behind which Next may be
-// called again.
-func (l *Log) Next() (*Entry, error) {
+// Require is Column, with the error of a column that isn't there.
+func (l *Log) Require(name string) (Column, error) {
+	c := l.Column(name)
+	if !c.Found {
+		return c, l.t.missingColumn(name)
+	}
+	return c, nil
+}
+
+// RequireTemperature is Require for a temperature: the unit must be K, C or F.
+func (l *Log) RequireTemperature(name string) (Column, error) {
+	c, err := l.Require(name)
+	if err == nil && c.Unit != "K" && c.Unit != "C" && c.Unit != "F" {
+		err = fmt.Errorf("%w: %s, line %d: %q says no unit of temperature: name it %s_K, %s_C or %s_F", ErrColumn, l.t.set.Name, l.t.line, c.Name, name, name, name)
+	}
+	return c, err
+}
+
+// Next returns the next row, io.EOF behind the last, or a *RowError, behind which Next may
+// be called again.
+func (l *Log) Next() (*LogRow, error) {
 	if l.done {
 		return nil, io.EOF
 	}
@@ -60,23 +87,60 @@ func (l *Log) Next() (*Entry, error) {
 		l.done = errors.Is(err, io.EOF) || l.t.failed()
 		return nil, err
 	}
-	e := &l.entry
-	e.Line, e.Label = l.t.line, fmt.Sprintf("line %d", l.t.line)
+	l.row = LogRow{Line: l.t.line, t: l.t}
 	if l.label >= 0 {
-		e.Label = l.t.fields[l.label]
-	}
-	for i, at := range l.columns {
-		e.Values[i] = math.NaN()
-		if at < 0 {
-			continue
+		l.row.Label = l.t.fields[l.label]
+		if l.t.header[l.label] == "time_s" {
+			v, err := l.row.Number(Column{Name: "time_s", Found: true, index: l.label})
+			if err != nil {
+				return nil, err
+			}
+			l.row.TimeS, l.row.HasTimeS = v, true
 		}
-		v, err := l.t.finite(at)
-		if err != nil {
-			row := asRow(err)
-			row.ID = e.Label
-			return nil, row
-		}
-		e.Values[i] = v
 	}
-	return e, nil
+	return &l.row, nil
+}
+
+// Text returns the field as it was written.
+func (r *LogRow) Text(c Column) string { return r.t.fields[c.index] }
+
+// Number returns a field's value. A missing one, or one that is not a finite number, is a
+// *RowError.
+func (r *LogRow) Number(c Column) (float64, error) {
+	v, err := r.t.finite(c.index)
+	if err != nil {
+		row := asRow(err)
+		row.ID = r.Label
+		return 0, row
+	}
+	return v, nil
+}
+
+// Optional is Number, with a value for a column that the table doesn't have.
+func (r *LogRow) Optional(c Column, without float64) (float64, error) {
+	if !c.Found {
+		return without, nil
+	}
+	return r.Number(c)
+}
+
+// Temperature returns a field's temperature by the unit of its column.
+func (r *LogRow) Temperature(c Column) (pyro.Temperature, error) {
+	v, err := r.Number(c)
+	switch {
+	case err != nil:
+		return 0, err
+	case c.Unit == "C":
+		return pyro.Celsius(v), nil
+	case c.Unit == "F":
+		return pyro.Fahrenheit(v), nil
+	}
+	return pyro.Temperature(v), nil
+}
+
+// Error returns a *RowError of the row.
+func (r *LogRow) Error(c Column, err error) error {
+	row := r.t.rowError(c.Name, err)
+	row.Line, row.ID = r.Line, r.Label
+	return row
 }

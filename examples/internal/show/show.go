@@ -5,7 +5,6 @@ import (
 	"fmt"
 	"io"
 	"os"
-	"strconv"
 	"strings"
 
 	"candent/pyro"
@@ -52,38 +51,6 @@ func Open(name, demo string, stdin io.Reader) (in io.ReadCloser, label string, e
 	}
 	f, err := os.Open(name)
 	return f, name, err
-}
-
-// ParseBand parses N or LO-HI in nm.
-func ParseBand(flag, text string) (*pyro.Band, error) {
-	lo, hi, flat := strings.Cut(text, "-")
-	a, err := strconv.ParseFloat(lo, 64)
-	b := a
-	if err == nil && flat {
-		b, err = strconv.ParseFloat(hi, 64)
-	}
-	if err != nil {
-		return nil, fmt.Errorf("-%s %q: a wavelength in nm such as 900, or a band such as 850-950", flag, text)
-	}
-	if !flat {
-		return pyro.Line(pyro.Wavelength(a) * pyro.Nanometre)
-	}
-	return pyro.FlatTop(pyro.Wavelength(a)*pyro.Nanometre, pyro.Wavelength(b)*pyro.Nanometre)
-}
-
-// Round keeps ten significant digits, more than any reading has.
-func Round(v float64) float64 {
-	r, err := strconv.ParseFloat(strconv.FormatFloat(v, 'g', 10, 64), 64)
-	if err != nil {
-		return v
-	}
-	return r
-}
-
-// Rounded is Round behind a pointer, for JSON in which a number may be null.
-func Rounded(v float64) *float64 {
-	r := Round(v)
-	return &r
 }
 
 // Progress writes a line to a terminal now and then, and nothing to anything else.

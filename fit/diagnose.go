@@ -39,6 +39,7 @@ func (e *Estimator) DiagnoseTo(dst *Result, w *Work, r Readings) error {
 	if dst.dof == 0 {
 		dst.note("as many parameters as readings: nothing is left to test the %v by", e.family)
 	}
+	dst.noteSight(w)
 	dst.noteLackOfFit()
 	dst.noteStructure()
 	return nil

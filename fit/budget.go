@@ -112,7 +112,7 @@ func (r *Result) Budget() []Share {
 			continue
 		}
 		name, shared := r.e.shareName(i)
-		s := Share{name, scale * math.Sqrt(v), -scale * r.effect[i], shared}
+		s := Share{name, scale * math.Sqrt(v), 0 - scale*r.effect[i], shared}
 		if k := slices.IndexFunc(list, func(o Share) bool { return o.Name == name }); k >= 0 {
 			list[k].StdK, list[k].EffectK = math.Hypot(list[k].StdK, s.StdK), 0
 			continue

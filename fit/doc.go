@@ -7,11 +7,18 @@
 // one function, the curve χ²(T) with everything else eliminated: its minima are the
 // basins, its crossings the interval.
 //
-//	s_i = ∫R_i(λ) ε(λ) L(λ,T) dλ / ∫R_i dλ · (1 + Σ ρ_ik η_k) + Σ α_ik η_k + noise
+//	s_i = f_i( d_i + g_i·[ ∫R_i(λ) X(λ) dλ / ∫R_i dλ + stray_i ] ) + noise
+//	X = τ·( φ·(ε L(T) + (1 − ε) L_s) + (1 − φ) L_rest ) + L_path
+//
+// Every known number in it is an input with a standard uncertainty (packages detector and
+// sightline describe them); what the readings share is one unknown η with a prior.
 //
 // # Symbols
 //
 //	s   reading, W m⁻² sr⁻¹ m⁻¹ (or any one unit, where the level is declared relative)
+//	f, d, g  linearity, dark level, gain × exposure of a channel
+//	τ, φ     transmittance of the path, fraction of the field that the target fills
+//	L_s      radiance that the surface reflects; L_rest, L_path of the rest and the path
 //	T   temperature, K; β = 1/T
 //	ε   emissivity; θ the parameters of its family
 //	η   shared inputs in units of their standard uncertainty, N(0, 1)
@@ -19,8 +26,7 @@
 //
 // # What it does not do
 //
-// It assumes an opaque surface that reflects nothing and fills the field, seen through
-// a clear path. It is no safety interlock: what it returns is a reading with a stated
+// It assumes an opaque surface. It is no safety interlock: what it returns is a reading with a stated
 // uncertainty, and the assumptions that it rests on are named beside it.
 //
 // An Estimator is immutable and safe for concurrent use; a Work is not.

@@ -6,6 +6,7 @@ import (
 	"candent/emissivity"
 	"candent/fit"
 	"candent/pyro"
+	"candent/pyro/sightline"
 )
 
 // A kiln engineer's single band, with an emissivity from the handbook and a calibration
@@ -59,4 +60,34 @@ func ExampleEstimator_Estimate_arbitraryUnits() {
 	fmt.Println(r, err)
 	// Output:
 	// 1453 K ± 24 K (95 %: 1407.6 to 1502.0 K); exponential emissivity of order 1 assumed; the readings do not contradict it, which is no proof; amplitude at 0.85 µm 2.26e-06 ± 4.5e-07 <nil>
+}
+
+// A kiln engineer's single band with hot walls and an old window.
+func ExampleEstimator_Estimate_hotWalls() {
+	band, err := pyro.FlatTop(1550*pyro.Nanometre, 1650*pyro.Nanometre)
+	if err != nil {
+		fmt.Println(err)
+		return
+	}
+	kiln, err := fit.New([]*pyro.Band{band}, fit.Assume{
+		Emissivity:   emissivity.Grey().WithPrior("level", 0.85, 0.05),
+		Noise:        fit.Relative(0.002),
+		Surroundings: sightline.Enclosure(&pyro.Input{Name: "wall", Unit: "K", Value: 1400, Std: 15, PerReading: true}),
+		Path:         []sightline.Layer{sightline.Window(&pyro.Input{Name: "window", Value: 0.90, Std: 0.02})},
+	})
+	if err != nil {
+		fmt.Println(err)
+		return
+	}
+	r, err := kiln.Estimate(fit.Readings{Signal: []float64{1.1e10}, Inputs: []float64{1412}}) // W m⁻² sr⁻¹ m⁻¹; wall, K
+	fmt.Println(r, err)
+	for _, share := range r.Budget() {
+		fmt.Printf("%s %.1f K, one u more adds %+.1f K\n", share.Name, share.StdK, share.EffectK)
+	}
+	// Output:
+	// 1295 K ± 11 K (95 %: 1268.1 to 1312.8 K); grey emissivity assumed with what is known of it, not tested; emissivity at 1.6 µm 0.850 ± 0.050 <nil>
+	// readings 0.5 K, one u more adds +0.0 K
+	// prior on level 8.6 K, one u more adds +8.6 K
+	// wall 4.0 K, one u more adds -4.0 K
+	// window 5.4 K, one u more adds -5.4 K
 }

@@ -45,6 +45,9 @@ func campaign(t *testing.T, bands []*pyro.Band, known float64) *fit.Estimator {
 // readings, and those of the mean over a shift. CANDENT_STUDY=whole draws 2,000 campaigns.
 func TestCampaigns(t *testing.T) {
 	campaigns := 300
+	if testing.Short() {
+		campaigns = 40
+	}
 	if os.Getenv("CANDENT_STUDY") == "whole" {
 		campaigns = 2000
 	}

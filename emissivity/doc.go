@@ -15,6 +15,22 @@
 //	Exponential(m) ln ε = log level + log slope·d + …       m = 1 … 3
 //	PowerLaw       ln ε = log level + exponent·ln(λ/λc)
 //
-// Values of type Family are immutable: methods return changed copies. They are safe for
-// concurrent use.
+// # The models
+//
+// Surfaces with a physics of their own implement Model:
+//
+//	HagenRubens  clean metal beyond about 5 µm, from its resistivity
+//	Drude        metal of free electrons, from plasma frequency and damping
+//	Fresnel      smooth opaque bulk, from n and k, at an angle, polarised or not
+//	Soot         Hottel and Broughton's law of a luminous flame
+//	Film         an oxide film of unknown thickness on metal, with its interference
+//	Mixture      a fraction f of one surface, 1 − f of another
+//	Tabulated    a table over λ and T with one scale
+//	Given        a known curve, without parameters
+//
+// WithPrior, Fix and Between say what is known of a model's parameters. A refractive index
+// is n + ik with k ≥ 0. Package emissivity/handbook has measured values.
+//
+// Descriptions are immutable: methods and functions return changed copies. They are safe
+// for concurrent use, as far as a pyro.Spectrum handed to them is.
 package emissivity

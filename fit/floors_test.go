@@ -11,15 +11,16 @@ import (
 
 // floors of the house; imports run downwards only. The longest matching prefix counts.
 var floors = map[string]int{
-	"candent/examples":       4,
-	"candent/fit/readings":   3,
-	"candent/fit":            2,
-	"candent/fit/internal":   1,
-	"candent/emissivity":     1,
-	"candent/pyro/detector":  1,
-	"candent/pyro/its90":     1,
-	"candent/pyro/sightline": 1,
-	"candent/pyro":           0,
+	"candent/examples":            4,
+	"candent/fit/readings":        3,
+	"candent/fit":                 2,
+	"candent/fit/internal":        1,
+	"candent/emissivity":          1,
+	"candent/emissivity/handbook": 1,
+	"candent/pyro/detector":       1,
+	"candent/pyro/its90":          1,
+	"candent/pyro/sightline":      1,
+	"candent/pyro":                0,
 }
 
 func floorOf(path string) int {
@@ -55,6 +56,8 @@ func TestImportsRunDownwards(t *testing.T) {
 		for _, i := range f.Imports {
 			path := strings.Trim(i.Path.Value, `"`)
 			same := path == from || strings.HasPrefix(path, "candent/examples/internal/")
+			// a package may take the types of the one that it lives in, on the same floor
+			same = same || strings.HasPrefix(from, path+"/") && floorOf(path) == floor
 			if to := floorOf(path); to >= 0 && to >= floor && !same {
 				t.Errorf("%s (floor %d) imports %s (floor %d)", name, floor, path, to)
 			}

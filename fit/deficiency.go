@@ -21,9 +21,13 @@ func (e *Estimator) findDeficiency() string {
 	for _, f := range []float64{0.25, 0.75, 0.5} {
 		β := math.Pow(e.hottest, f) * math.Pow(e.coldest, 1-f)
 		ψ := make([]float64, e.p+e.q)
-		ψ[0] = 0.5
-		if e.lower != 0 {
+		switch {
+		case e.model != nil:
+			copy(ψ, e.model.starts[:e.p])
+		case e.lower != 0:
 			ψ[0] = math.Log(0.5)
+		default:
+			ψ[0] = 0.5
 		}
 		for k, fixed := range e.fixed {
 			if fixed {
@@ -41,7 +45,7 @@ func (e *Estimator) deficiencyAt(β float64, ψ []float64) string {
 	// Columns: ln T and what is free of ψ; rows: ∂ ln m of the channels, then the priors.
 	names := []string{"temperature"}
 	free := []int{-1}
-	for k, name := range e.family.Parameters() {
+	for k, name := range e.parameterNames() {
 		if !e.fixed[k] {
 			names, free = append(names, name), append(free, k)
 		}

@@ -37,7 +37,7 @@ func (e *Estimator) DiagnoseTo(dst *Result, w *Work, r Readings) error {
 		dst.note("χ² is least at an end of the temperature range")
 	}
 	if dst.dof == 0 {
-		dst.note("as many parameters as readings: nothing is left to test the %v by", e.family)
+		dst.note("as many parameters as readings: nothing is left to test the %v by", e.assume.Emissivity)
 	}
 	dst.noteSight(w)
 	dst.noteLackOfFit()
@@ -88,7 +88,7 @@ func (r *Result) contradicted() bool {
 
 func (r *Result) noteLackOfFit() {
 	if r.contradicted() {
-		r.note("the readings contradict the assumptions (%v, %v): χ² = %.3g on %d degrees of freedom; the interval holds only if they are right", r.e.family, r.e.assume.Noise, r.chi2, r.dof)
+		r.note("the readings contradict the assumptions (%v, %v): χ² = %.3g on %d degrees of freedom; the interval holds only if they are right", r.e.assume.Emissivity, r.e.assume.Noise, r.chi2, r.dof)
 	}
 }
 
@@ -130,7 +130,7 @@ func (r *Result) noteRuns(z []float64) {
 	mean := 1 + 2*up*down/n
 	variance := (mean - 1) * (mean - 2) / (n - 1)
 	if variance > 0 && (runs-mean)/math.Sqrt(variance) < -3.3 {
-		r.note("the residuals keep their sign over long stretches of wavelength: the surface does not follow the %v", r.e.family)
+		r.note("the residuals keep their sign over long stretches of wavelength: the surface does not follow the %v", r.e.assume.Emissivity)
 	}
 }
 

@@ -286,6 +286,10 @@ func solveSmall(a, x []float64) {
 // a linear family needs.
 func (w *Work) startTheta(β float64, ψ []float64) {
 	e := w.e
+	if e.model != nil {
+		w.startModel(β, ψ)
+		return
+	}
 	w.blackbody(β)
 	clear(ψ)
 	if e.link == emissivity.Identity {

@@ -15,6 +15,7 @@ import (
 type Estimator struct {
 	assume Assume
 	family emissivity.Family
+	model  *modelPlan // instead of a family; or nil
 	link   emissivity.Link
 	bands  []*pyro.Band
 	used   []int // indices into bands of the channels that no mask leaves out
@@ -141,6 +142,9 @@ func (e *Estimator) compileFamily() error {
 	if err := e.assume.Emissivity.Err(); err != nil {
 		return fmt.Errorf("%w: %w", ErrAssume, err)
 	}
+	if m, ok := e.assume.Emissivity.(emissivity.Model); ok {
+		return e.compileModel(m)
+	}
 	f, ok := e.assume.Emissivity.(emissivity.Family)
 	if !ok {
 		return fmt.Errorf("%w: %v is not a family", ErrAssume, e.assume.Emissivity)
@@ -254,6 +258,15 @@ func (e *Estimator) compileBands() {
 // compileLimits lists where 0 < ε ≤ 1 is held: at the edges of every band, or at the
 // outermost ones alone where the family is monotonic.
 func (e *Estimator) compileLimits() {
+	if e.model != nil {
+		e.lower, e.upper = 0, 1
+		for k := range e.p {
+			row := make([]float64, e.p)
+			row[k] = 1
+			e.limits = append(e.limits, row...)
+		}
+		return
+	}
 	e.lower, e.upper = math.Inf(-1), 1.0
 	if e.link == emissivity.Identity {
 		e.lower = 0

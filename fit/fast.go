@@ -51,7 +51,7 @@ type fastPlan struct {
 func (e *Estimator) compileFast() *fastPlan {
 	a := e.assume
 	plain := !slices.Contains(e.fixed, true) && len(e.data) == 0
-	if !plain || e.p > 2 || e.whiten != nil || a.Loss.kind != square ||
+	if !plain || e.model != nil || e.p > 2 || e.whiten != nil || a.Loss.kind != square ||
 		a.Temperature != (TemperaturePrior{}) || e.deficient != "" || e.n < e.p+2 {
 		return nil
 	}

@@ -36,7 +36,7 @@ func decimals(width float64) int {
 
 // Assumption words what the result rests on.
 func (r *Result) Assumption() string {
-	s := r.e.family.String() + " assumed"
+	s := r.e.assume.Emissivity.String() + " assumed"
 	known := len(r.e.data) > 0
 	for _, fixed := range r.e.fixed {
 		known = known || fixed
@@ -99,7 +99,7 @@ func (r *Result) String() string {
 			if r.Relative() {
 				v, u = fmt.Sprintf("%.3g", ε), fmt.Sprintf("%.2g", std)
 			}
-			s += fmt.Sprintf("; %s at %v %s ± %s", r.curveName(), r.e.bands[middle].Mean(), v, u)
+			s += fmt.Sprintf("; %s at %.4g %s ± %s", r.curveName(), r.e.bands[middle].Mean(), v, u)
 		}
 	}
 	return s
@@ -120,7 +120,7 @@ func (r *Result) Report() string {
 	p("%v", r)
 	p("")
 	p("Assumed")
-	p("  surface       %v, opaque", e.family)
+	p("  surface       %v, opaque", e.assume.Emissivity)
 	p("  noise         %v", e.assume.Noise)
 	p("  range         %.0f K to %.0f K", float64(e.assume.Range.Min), float64(e.assume.Range.Max))
 	if t := e.assume.Temperature; t.Value > 0 {
@@ -156,7 +156,7 @@ func (r *Result) Report() string {
 		p("  χ²            %.4g on %d degrees of freedom", r.chi2, r.dof)
 	}
 	if r.State() == Determined && r.fitted {
-		for _, name := range e.family.Parameters() {
+		for _, name := range e.parameterNames() {
 			switch v, u, state := r.Parameter(name); state {
 			case ParameterDetermined:
 				value, std := WithUncertainty(v, u)
@@ -228,7 +228,7 @@ func (r *Result) MarshalJSON() ([]byte, error) {
 		Freedom     *int       `json:"degrees_of_freedom,omitempty"`
 		Model       string     `json:"model"`
 		Notes       []string   `json:"notes,omitempty"`
-	}{State: r.State().String(), Model: r.e.family.String(), Notes: r.Notes()}
+	}{State: r.State().String(), Model: r.e.assume.Emissivity.String(), Notes: r.Notes()}
 	t, state := r.Temperature()
 	if state == Determined {
 		out.Temperature = num(float64(t))
@@ -282,7 +282,7 @@ func sevenDigits(v float64) float64 {
 
 // LogValue lets slog print the result as a group.
 func (r *Result) LogValue() slog.Value {
-	attrs := []slog.Attr{slog.String("state", r.State().String()), slog.String("assumed", r.e.family.String())}
+	attrs := []slog.Attr{slog.String("state", r.State().String()), slog.String("assumed", r.e.assume.Emissivity.String())}
 	if t, state := r.Temperature(); state == Determined {
 		attrs = append(attrs, slog.Float64("temperature_K", float64(t)))
 	}

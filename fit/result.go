@@ -4,7 +4,6 @@ import (
 	"math"
 	"slices"
 
-	"candent/emissivity"
 	"candent/pyro"
 )
 
@@ -177,18 +176,11 @@ func (r *Result) Emissivity(i int) (value, std float64, hasStd, ok bool) {
 	if j < 0 {
 		return 0, 0, false, false
 	}
-	value, _ = e.curve(r.psi[:e.p], e.coord[j])
+	var room [maxModel]float64
+	grad := room[:e.p]
+	value = r.curveAt(j, grad)
 	if !r.hasCov || r.inside() != 1 {
 		return value, 0, false, true
-	}
-	var grad [emissivity.MaxOrder + 1]float64
-	φ := 1.0
-	if e.link == emissivity.Exp {
-		φ = value
-	}
-	for k := range e.p {
-		grad[k] = φ
-		φ *= e.coord[j]
 	}
 	sum, size := 0.0, e.size()
 	for a := range e.p {
@@ -227,22 +219,26 @@ func (s ParameterState) String() string {
 // Parameter returns the value and the standard uncertainty of a parameter of the family by
 // its name; the uncertainty is 0 and means nothing unless the state is ParameterDetermined.
 func (r *Result) Parameter(name string) (value, std float64, state ParameterState) {
-	k := slices.Index(r.e.family.Parameters(), name)
+	k := slices.Index(r.e.parameterNames(), name)
 	if k < 0 || r.State() != Determined || !r.fitted {
 		return 0, 0, ParameterUndetermined
 	}
+	value, scale := r.psi[k], 1.0
+	if m := r.e.model; m != nil {
+		value, scale = m.physical(k, value), m.parameters[k].Hi-m.parameters[k].Lo
+	}
 	switch {
 	case r.e.fixed[k]:
-		return r.psi[k], 0, ParameterFixed
+		return value, 0, ParameterFixed
 	case r.basins[0].atBound:
-		return r.psi[k], 0, ParameterAtBound
+		return value, 0, ParameterAtBound
 	case r.inside() != 1:
-		return r.psi[k], 0, ParameterAmbiguous
+		return value, 0, ParameterAmbiguous
 	case !r.hasCov:
 		return 0, 0, ParameterUndetermined
 	}
 	at := (1 + k) * (r.e.size() + 1)
-	return r.psi[k], math.Sqrt(max(r.cov[at], 0)), ParameterDetermined
+	return value, scale * math.Sqrt(max(r.cov[at], 0)), ParameterDetermined
 }
 
 // ChiSquared returns the minimum of χ² and its degrees of freedom.

@@ -267,7 +267,7 @@ func (e *Estimator) compileDetectors() error {
 	s := e.sight
 	s.channel = make([]channel, e.n)
 	e.noisy = e.assume.Detectors != nil
-	e.bent = e.assume.Surroundings.Remainder == sightline.Itself
+	e.bent = e.bent || e.assume.Surroundings.Remainder == sightline.Itself
 	for j, i := range e.used {
 		c := channel{dark: -1, gain: -1, exposure: -1}
 		if e.assume.Detectors != nil {

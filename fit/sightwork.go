@@ -315,7 +315,7 @@ func (w *Work) evaluateSight(β float64, θ, η []float64) {
 		self += v.bySelf[k] * h
 	}
 	wide := !e.lines && e.table.functions != tableMean
-	var gradB [emissivity.MaxOrder + 1]float64
+	gradB := w.modelRoom[:p]
 	for j := range e.n {
 		row := w.jac[j*size : (j+1)*size]
 		S, R := w.black[j], w.rate[j]
@@ -332,7 +332,9 @@ func (w *Work) evaluateSight(β float64, θ, η []float64) {
 			R += s * s * dd / 2 / f
 		}
 		var ε, dε, εb float64
-		if !wide {
+		if e.model != nil {
+			ε, dε, εb = w.modelRow(j, β, row[1:1+p], gradB, θ)
+		} else if !wide {
 			d := w.coord[j]
 			ε, dε = e.curve(θ, d)
 			f := 1.0
@@ -345,7 +347,7 @@ func (w *Work) evaluateSight(β float64, θ, η []float64) {
 			}
 			if e.lines {
 				dε, εb = 0, ε
-				copy(gradB[:p], row[1:1+p])
+				copy(gradB, row[1:1+p])
 			} else {
 				dε *= w.dcoord[j]
 				db := v.coord[j]
@@ -354,14 +356,14 @@ func (w *Work) evaluateSight(β float64, θ, η []float64) {
 				if e.link == emissivity.Exp {
 					f = εb
 				}
-				for k := range p {
+				for k := range gradB {
 					gradB[k] = f
 					f *= db
 				}
 			}
 		} else {
 			ε, dε = e.overBand(row[1:1+p], θ, w.coord[j], w.dcoord[j], w.spread[j])
-			εb, _ = e.overBand(gradB[:p], θ, v.coord[j], 0, v.spread[j])
+			εb, _ = e.overBand(gradB, θ, v.coord[j], 0, v.spread[j])
 		}
 		E, slope, bySelf := apparent(ε, self)
 		Eb, slopeB, bySelfB := apparent(εb, self)

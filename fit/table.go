@@ -33,7 +33,7 @@ const (
 // counts relative to its value at the band's mean wavelength; nil counts as 1.
 func newBandTable(e *Estimator, hottest, coldest float64, through func(i int, λ pyro.Wavelength) float64) *bandTable {
 	t := &bandTable{cells: tableCells, from: hottest, by: (coldest - hottest) / tableCells, n: e.n, functions: tableFunctions}
-	if e.link == emissivity.Identity && e.p <= 2 {
+	if e.link == emissivity.Identity && e.p <= 2 && e.model == nil {
 		t.functions = tableMean
 	}
 	t.coef = make([]float64, t.cells*t.n*t.width())

@@ -36,7 +36,7 @@ func (e *Estimator) checkUnit(r Readings) error {
 // compileShape compiles the same assumptions with a relative level, where that can say
 // something: an absolute level about which nothing else is known.
 func (e *Estimator) compileShape() (*Estimator, error) {
-	if !e.sight.clear || e.family.IsRelative() || len(e.data) > 0 || e.deficient != "" || e.n < e.p+2 ||
+	if e.model != nil || !e.sight.clear || e.family.IsRelative() || len(e.data) > 0 || e.deficient != "" || e.n < e.p+2 ||
 		e.assume.Temperature != (TemperaturePrior{}) {
 		return nil, nil
 	}

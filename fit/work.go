@@ -61,6 +61,7 @@ type Work struct {
 	decrement            float64
 	kept                 [3]kept // the last basins that refineSight found
 	slot                 int
+	modelRoom            []float64 // gradients and parameters, handed to models
 	sights               sightGroups
 	startShared          []float64 // η from which refineSight starts
 	columns              columns
@@ -75,12 +76,12 @@ type kept struct{ psi, cov []float64 }
 func (e *Estimator) NewWork() *Work {
 	f := func(n int) []float64 { return make([]float64, n) }
 	s := e.size()
-	w := &Work{e: e, signal: f(e.n), std: f(e.n), log: f(e.n), shot: f(e.n), rounding: f(e.n), censored: make([]int8, e.n), sighted: !e.sight.clear || e.q > 0,
+	w := &Work{e: e, signal: f(e.n), std: f(e.n), log: f(e.n), shot: f(e.n), rounding: f(e.n), censored: make([]int8, e.n), sighted: !e.sight.clear || e.q > 0 || e.model != nil,
 		black: f(e.n), rate: f(e.n), model: f(e.n), jac: f(e.n * s), residual: f(e.n),
 		grad: f(s), hess: f(s * s), psi: f(s), trial: f(s), step: f(s), chol: f(s * s), invRow: f(s * (e.p + 1)),
 		active: make([]int, 0, e.p+1), activeLow: make([]bool, 0, e.p+1), schur: f((e.p + 1) * (e.p + 1)), multiply: f(e.p + 1), rowRoom: f(s),
 		grid: make([]gridPoint, gridSteps+1)}
-	w.coord = e.coord
+	w.coord, w.modelRoom = e.coord, f(3*maxModel)
 	if w.sighted {
 		w.newSeen()
 	}

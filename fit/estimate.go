@@ -39,6 +39,9 @@ func (e *Estimator) EstimateTo(dst *Result, w *Work, r Readings) error {
 		return err
 	}
 	copy(dst.signal, w.signal)
+	if e.process != nil {
+		return e.posteriorTo(dst, w)
+	}
 	ψ := dst.psi
 	if t := e.assume.Temperature; t.Value > 0 && t.StdK == 0 {
 		β := 1 / float64(t.Value)
@@ -222,6 +225,10 @@ func (e *Estimator) IntervalTo(dst *Result, w *Work, r Readings, p float64) erro
 	if err := w.load(r); err != nil {
 		return err
 	}
+	if e.process != nil {
+		dst.posteriorInterval(p)
+		return nil
+	}
 	dst.probability = p
 	if t := e.assume.Temperature; t.Value > 0 && t.StdK == 0 {
 		dst.hot, dst.cold = end{dst.beta, false}, end{dst.beta, false}
@@ -386,6 +393,9 @@ func (w *Work) root(inside, outside, limit float64) float64 {
 // Curve returns χ² of a reading at each temperature with everything else eliminated, and
 // the logarithm of the determinant of the information on what was eliminated.
 func (e *Estimator) Curve(r Readings, t []pyro.Temperature) (chi2, logDet []float64, err error) {
+	if e.process != nil {
+		return nil, nil, fmt.Errorf("%w: %v has a posterior, no curve of χ²: see Result.Posterior", ErrAssume, e.process.surface)
+	}
 	w := e.NewWork()
 	if err := w.load(r); err != nil {
 		return nil, nil, err

@@ -13,11 +13,12 @@ import (
 // Estimator is a compiled set of bands and assumptions. It is immutable and safe for
 // concurrent use; each goroutine brings a Work of its own.
 type Estimator struct {
-	assume Assume
-	family emissivity.Family
-	link   emissivity.Link
-	bands  []*pyro.Band
-	used   []int // indices into bands of the channels that no mask leaves out
+	assume  Assume
+	family  emissivity.Family
+	process *processPlan // instead of a family; or nil
+	link    emissivity.Link
+	bands   []*pyro.Band
+	used    []int // indices into bands of the channels that no mask leaves out
 
 	n, p, q int // channels used, parameters of the family, shared inputs
 	lines   bool
@@ -86,6 +87,12 @@ func New(bands []*pyro.Band, a Assume) (*Estimator, error) {
 		return nil, err
 	}
 	e.compileBands()
+	if e.process != nil {
+		if err := e.compileProcess(); err != nil {
+			return nil, err
+		}
+		return e, nil
+	}
 	e.compileLimits()
 	e.deficient = e.findDeficiency()
 	e.fast = e.compileFast()
@@ -133,6 +140,10 @@ func (e *Estimator) compileFamily() error {
 	}
 	if err := e.assume.Emissivity.Err(); err != nil {
 		return fmt.Errorf("%w: %w", ErrAssume, err)
+	}
+	if s, ok := e.assume.Emissivity.(emissivity.Process); ok {
+		e.process = &processPlan{surface: s}
+		return nil
 	}
 	f, ok := e.assume.Emissivity.(emissivity.Family)
 	if !ok {

@@ -36,7 +36,10 @@ func decimals(width float64) int {
 
 // Assumption words what the result rests on.
 func (r *Result) Assumption() string {
-	s := r.e.family.String() + " assumed"
+	s := r.e.assume.Emissivity.String() + " assumed"
+	if r.posterior != nil {
+		s = r.assumedRange()
+	}
 	known := len(r.e.data) > 0
 	for _, fixed := range r.e.fixed {
 		known = known || fixed
@@ -120,7 +123,7 @@ func (r *Result) Report() string {
 	p("%v", r)
 	p("")
 	p("Assumed")
-	p("  surface       %v, opaque, reflecting nothing, filling the field", e.family)
+	p("  surface       %v, opaque, reflecting nothing, filling the field", e.assume.Emissivity)
 	p("  noise         %v", e.assume.Noise)
 	p("  range         %.0f K to %.0f K", float64(e.assume.Range.Min), float64(e.assume.Range.Max))
 	if t := e.assume.Temperature; t.Value > 0 {
@@ -147,7 +150,7 @@ func (r *Result) Report() string {
 		if iv.HighOpen {
 			hi = "open"
 		}
-		p("  interval      %s to %s, profile, %.4g %%", lo, hi, 100*iv.Probability)
+		p("  interval      %s to %s, %v, %.4g %%", lo, hi, r.IntervalKind(), 100*iv.Probability)
 	}
 	if r.fitted {
 		p("  χ²            %.4g on %d degrees of freedom", r.chi2, r.dof)
@@ -218,7 +221,7 @@ func (r *Result) MarshalJSON() ([]byte, error) {
 		Freedom     *int       `json:"degrees_of_freedom,omitempty"`
 		Model       string     `json:"model"`
 		Notes       []string   `json:"notes,omitempty"`
-	}{State: r.State().String(), Model: r.e.family.String(), Notes: r.Notes()}
+	}{State: r.State().String(), Model: r.e.assume.Emissivity.String(), Notes: r.Notes()}
 	t, state := r.Temperature()
 	if state == Determined {
 		out.Temperature = num(float64(t))
@@ -272,7 +275,7 @@ func sevenDigits(v float64) float64 {
 
 // LogValue lets slog print the result as a group.
 func (r *Result) LogValue() slog.Value {
-	attrs := []slog.Attr{slog.String("state", r.State().String()), slog.String("assumed", r.e.family.String())}
+	attrs := []slog.Attr{slog.String("state", r.State().String()), slog.String("assumed", r.e.assume.Emissivity.String())}
 	if t, state := r.Temperature(); state == Determined {
 		attrs = append(attrs, slog.Float64("temperature_K", float64(t)))
 	}

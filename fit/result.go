@@ -46,6 +46,8 @@ type Result struct {
 	limit       float64
 	hot, cold   end // in β: the hot end is the smaller
 
+	posterior *posterior // of a process; or nil
+
 	share []float64 // of u²(T): readings, temperature prior, data, shared inputs
 	notes []string
 }
@@ -54,7 +56,11 @@ type Result struct {
 func (e *Estimator) NewResult() *Result {
 	f := func(n int) []float64 { return make([]float64, n) }
 	size := e.size()
-	return &Result{e: e, basins: make([]basin, 0, maxBasins), psi: f(e.p + e.q), cov: f(size * size),
+	var post *posterior
+	if e.process != nil {
+		post = e.newPosterior()
+	}
+	return &Result{e: e, posterior: post, basins: make([]basin, 0, maxBasins), psi: f(e.p + e.q), cov: f(size * size),
 		signal: f(e.n), model: f(e.n), sigma: f(e.n), share: f(2 + len(e.data) + e.q)}
 }
 
@@ -160,7 +166,12 @@ func (r *Result) Basins() []pyro.Temperature {
 }
 
 // Relative reports whether the curve is an amplitude, not an emissivity.
-func (r *Result) Relative() bool { return r.e.family.IsRelative() }
+func (r *Result) Relative() bool {
+	if p := r.e.process; p != nil {
+		return p.surface.IsRelative()
+	}
+	return r.e.family.IsRelative()
+}
 
 // Emissivity returns the fitted emissivity (the amplitude, where the level is relative)
 // at the mean wavelength of band i, and its standard uncertainty. ok is false where the state is not Determined,
@@ -173,6 +184,9 @@ func (r *Result) Emissivity(i int) (value, std float64, hasStd, ok bool) {
 	j := slices.Index(e.used, i)
 	if j < 0 {
 		return 0, 0, false, false
+	}
+	if r.posterior != nil {
+		return r.posteriorEmissivity(j)
 	}
 	value, _ = e.curve(r.psi[:e.p], e.coord[j])
 	if !r.hasCov || r.inside() != 1 {
@@ -225,7 +239,7 @@ func (s ParameterState) String() string {
 // its name; the uncertainty is 0 and means nothing unless the state is ParameterDetermined.
 func (r *Result) Parameter(name string) (value, std float64, state ParameterState) {
 	k := slices.Index(r.e.family.Parameters(), name)
-	if k < 0 || r.State() != Determined || !r.fitted {
+	if k < 0 || r.State() != Determined || !r.fitted || r.posterior != nil {
 		return 0, 0, ParameterUndetermined
 	}
 	switch {

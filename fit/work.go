@@ -44,6 +44,8 @@ type Work struct {
 	rows   []float64 // of the covariance
 	solver *lsq.Solver
 
+	process *processWork // for a process; or nil
+
 	// the fast path
 	groups               []group
 	inverse              []float64 // 1/variance
@@ -78,6 +80,9 @@ func (e *Estimator) NewWork() *Work {
 	if !e.lines {
 		w.coord, w.dcoord = f(e.n), f(e.n)
 		w.spread = make([]spread, e.n)
+	}
+	if e.process != nil {
+		w.process = e.newProcessWork()
 	}
 	if e.fast != nil {
 		w.groups, w.inverse, w.gain, w.slope, w.effective = make([]group, e.fast.groups), f(e.n), f(e.n), f(e.n), f(e.n)

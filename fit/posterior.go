@@ -1,0 +1,571 @@
+package fit
+
+import (
+	"fmt"
+	"math"
+)
+
+// The posterior of 1/T = β for a process: with y(β) the logarithm of the emissivities that
+// the readings ask for at β (logRatio), each component c of the mixture gives
+//
+//	p_c(β) ∝ share_c · N(y(β); µ_c, ΦA_cΦᵀ + RRᵀ + D) · P(ε ≤ 1 | readings, β, c)/P(ε ≤ 1 | c)
+//
+// with R the shared inputs and D the readings' variance and the roughness. y is a smooth
+// function of β, so that over a panel of β it is a polynomial of degree tableDegree in the
+// panel's coordinate z, to panelAccuracy; the quadratic form in N is then one of twice the
+// degree whose coefficients are found once: a point of the density costs a few
+// multiplications for each component. T is flat over the range beforehand, so that p(β) has
+// the factor 1/β² beside that of a temperature known beforehand.
+
+// processWork is a Work's scratch for a process.
+type processWork struct {
+	plan *processPlan
+
+	logSignal, variance []float64
+	shared              []float64 // R, n×q
+	boltzmann, rest     []float64
+	y, dy, limit        []float64
+	nodes               [][]float64 // y at a panel's nodes, then its coefficients
+
+	groups []groupWork
+	comps  []compWork
+	panels []panel
+	count  int // panels in use
+
+	density  []float64 // of each component at one point
+	exponent []float64
+	grid     []interval // first in z of their panels, then in β
+	coarse   []interval
+	stack    []interval
+	offset   float64
+	safe     float64 // for β below, ε ≤ 1 is certain
+	mean     []float64
+	cov      []float64
+}
+
+type groupWork struct {
+	phi      []float64 // n×r, R appended
+	r        int
+	weight   []float64 // 1/(diagonal + variance)
+	gram     []float64 // ΦᵀWΦ
+	meanForm []float64 // ΦᵀWµ for each mean, r each
+	meanNorm []float64 // µᵀWµ
+	weighted []float64 // W·coefficient, scratch
+	form     []float64 // ΦᵀWc_m, r×degrees
+	norm     [degrees * degrees]float64
+	cross    []float64 // µᵀWc_m for each mean
+}
+
+type compWork struct {
+	lower   []float64 // Cholesky factor of A⁻¹ + ΦᵀWΦ, its diagonal inverted
+	base    float64   // constant − ½ ln det
+	offset  int       // into a panel's x
+	cov     []float64 // of the curve at the plan's points, given the reading
+	hasCov  bool
+	peak    float64 // of the logarithm of the density over all panels
+	through []float64
+}
+
+const (
+	degrees  = tableDegree + 1
+	qDegrees = 2*tableDegree + 1
+
+	panelAccuracy = 1e-7 // of y, at a panel's end
+	maxPanels     = 24
+	maxIntervals  = 768
+)
+
+// panel is an interval of β in which y is a polynomial of z = (β − middle)/half.
+type panel struct {
+	middle, half float64
+	log          []float64 // ln of the density of each component before 1/β², qDegrees each
+	x            []float64 // L⁻¹ΦᵀW(c − µ) of each component, r×degrees from its offset
+	curve        []float64 // posterior mean of ln ε at the plan's points, degrees each
+	hasCurve     []bool
+}
+
+// interval is a piece of the posterior with the density at its ends and middle.
+type interval struct {
+	from, to   float64
+	fa, fm, fb float64
+	panel      int
+}
+
+var panelNodes, panelToPower = func() (nodes [degrees]float64, m [degrees][degrees]float64) {
+	nodes = chebyshevNodes(&m)
+	return nodes, m
+}()
+
+func (e *Estimator) newProcessWork() *processWork {
+	plan := e.process
+	f := func(n int) []float64 { return make([]float64, n) }
+	p := &processWork{plan: plan, logSignal: f(e.n), variance: f(e.n), shared: f(e.n * e.q), boltzmann: f(e.n), rest: f(e.n), y: f(e.n), dy: f(e.n), limit: f(e.n),
+		density: f(len(plan.comps)), exponent: f(len(plan.comps)), mean: f(len(plan.points)), cov: f(len(plan.points) * len(plan.points)),
+		groups: make([]groupWork, len(plan.groups)), comps: make([]compWork, len(plan.comps)), panels: make([]panel, maxPanels), grid: make([]interval, 0, maxIntervals), coarse: make([]interval, 0, maxIntervals), stack: make([]interval, 0, 64)}
+	for range degrees {
+		p.nodes = append(p.nodes, f(e.n))
+	}
+	for i, g := range plan.groups {
+		r := g.r + e.q
+		w := &p.groups[i]
+		*w = groupWork{r: r, weight: f(e.n), gram: f(r * r), meanForm: f(r * len(plan.means)), meanNorm: f(len(plan.means)), weighted: f(e.n), form: f(r * degrees), cross: f(degrees * len(plan.means)), phi: g.phi}
+		if e.q > 0 {
+			w.phi = f(e.n * r)
+			for j := range e.n {
+				copy(w.phi[j*r:], g.phi[j*g.r:(j+1)*g.r])
+			}
+		}
+	}
+	size := 0
+	for c := range p.comps {
+		r := p.groups[plan.comps[c].group].r
+		p.comps[c] = compWork{lower: f(r * r), offset: size, cov: f(len(plan.points) * len(plan.points)), through: f(r * len(plan.points))}
+		size += r * degrees
+	}
+	for i := range p.panels {
+		p.panels[i].log = f(len(plan.comps) * qDegrees)
+		p.panels[i].x = f(size)
+		p.panels[i].curve = f(len(plan.comps) * len(plan.points) * degrees)
+		p.panels[i].hasCurve = make([]bool, len(plan.comps))
+	}
+	return p
+}
+
+// factorise prepares what depends on the reading's uncertainties alone.
+func (w *Work) factorise() error {
+	e, p := w.e, w.process
+	for i := range p.groups {
+		g, plan := &p.groups[i], p.plan.groups[i]
+		r := g.r
+		for j, v := range p.variance {
+			g.weight[j] = 1 / (v + plan.diagonal[j])
+			for k := range e.q {
+				g.phi[j*r+plan.r+k] = p.shared[j*e.q+k]
+			}
+		}
+		clear(g.gram)
+		for j, v := range g.weight {
+			row := g.phi[j*r : (j+1)*r]
+			for a, φ := range row {
+				f := v * φ
+				out := g.gram[a*r : a*r+a+1]
+				for b := range out {
+					out[b] += f * row[b]
+				}
+			}
+		}
+		clear(g.meanForm)
+		for m, mean := range p.plan.means {
+			out := g.meanForm[m*r : (m+1)*r]
+			norm := 0.0
+			for j, v := range g.weight {
+				f := v * mean[j]
+				norm += f * mean[j]
+				for a, φ := range g.phi[j*r : (j+1)*r] {
+					out[a] += f * φ
+				}
+			}
+			g.meanNorm[m] = norm
+		}
+	}
+	logWeight := 0.0
+	last := -1
+	for c := range p.comps {
+		k, plan := &p.comps[c], &p.plan.comps[c]
+		g := &p.groups[plan.group]
+		if plan.group != last {
+			last, logWeight = plan.group, 0
+			for _, v := range g.weight {
+				logWeight += math.Log(v)
+			}
+		}
+		r, inner := g.r, g.r-e.q
+		l := k.lower
+		product := 1.0
+		logDet := 0.0
+		for a := range r {
+			row := l[a*r : a*r+a+1]
+			for b := range row {
+				v := g.gram[a*r+b]
+				if a < inner {
+					v += plan.precision[a*inner+b]
+				} else if a == b {
+					v++
+				}
+				lb := l[b*r : b*r+b+1]
+				for m, f := range row[:b] {
+					v -= f * lb[m]
+				}
+				if b < a {
+					row[b] = v * lb[b]
+					continue
+				}
+				if !(v > 0) {
+					return fmt.Errorf("%w: the readings leave a direction of %v unfixed", ErrReadings, p.plan.surface)
+				}
+				product *= v
+				if product > 1e200 || product < 1e-200 {
+					logDet += math.Log(product)
+					product = 1
+				}
+				row[a] = 1 / math.Sqrt(v)
+			}
+		}
+		logDet += math.Log(product)
+		k.base = plan.constant + (logWeight-logDet)/2
+		k.hasCov = false
+	}
+	return nil
+}
+
+// bracket returns the β between which the posterior has its mass: at the hot end every
+// channel needs the least emissivity that counts, at the cold end one channel needs an
+// emissivity beyond 1 by widest standard deviations of the readings; safe is where one comes
+// as close below 1. y rises with β and is concave, so that Newton's steps don't overshoot.
+func (w *Work) bracket() (hot, cold float64) {
+	e, p := w.e, w.process
+	hot, cold = e.hottest, e.coldest
+	p.safe = math.Inf(1)
+	if p.plan.points == nil {
+		return hot, cold
+	}
+	w.fillLimit()
+	limit := p.limit
+	seek := func(β float64, bound func(j int) float64, all bool) float64 {
+		for range 40 {
+			w.logRatio(p.y, p.dy, β)
+			step := math.Inf(1)
+			if all {
+				step = math.Inf(-1)
+			}
+			for j := range p.y {
+				s := (bound(j) - p.y[j]) / p.dy[j]
+				if all {
+					step = max(step, s)
+				} else {
+					step = min(step, s)
+				}
+			}
+			next := min(max(β+step, e.hottest), e.coldest)
+			done := math.Abs(next-β) <= 1e-4*β
+			β = next
+			if done {
+				break
+			}
+		}
+		return β
+	}
+	p.safe = seek(hot, func(j int) float64 { return -limit[j] }, false)
+	cold = seek(p.safe, func(j int) float64 { return limit[j] }, false)
+	hot = seek(p.safe, func(j int) float64 { return p.plan.lowest[j] - limit[j] }, true)
+	return hot, cold
+}
+
+// fillLimit writes widest standard deviations of each reading's logarithm, the roughness
+// included, to limit.
+func (w *Work) fillLimit() {
+	e, p := w.e, w.process
+	for j, v := range p.variance {
+		for _, r := range p.shared[j*e.q : (j+1)*e.q] {
+			v += r * r
+		}
+		d := 0.0
+		for _, g := range p.plan.groups {
+			d = max(d, g.diagonal[j])
+		}
+		p.limit[j] = widest * math.Sqrt(v+d)
+	}
+}
+
+// addPanel fits y over [hot, cold] and prepares the components' densities, halving the
+// panel where a polynomial isn't enough.
+func (w *Work) addPanel(hot, cold float64) error {
+	e, p := w.e, w.process
+	middle, half := (hot+cold)/2, (cold-hot)/2
+	for i, z := range panelNodes {
+		w.logRatio(p.nodes[i], nil, middle+half*z)
+	}
+	worst := 0.0
+	for j := range e.n {
+		var v, c [degrees]float64
+		for i := range v {
+			v[i] = p.nodes[i][j]
+		}
+		for m := range c {
+			t := &panelToPower[m]
+			c[m] = v[0]*t[0] + v[1]*t[1] + v[2]*t[2] + v[3]*t[3] + v[4]*t[4] + v[5]*t[5]
+		}
+		for m := range c {
+			p.nodes[m][j] = c[m]
+		}
+		worst = max(worst, math.Abs(c[degrees-1]))
+	}
+	// The last coefficient of Chebyshev's series is 2⁻⁴ of the last power's; the next is
+	// smaller still by the series' ratio, for which a tenth is allowed.
+	if worst/16/10 > panelAccuracy && cold-hot > 1e-9*cold {
+		if err := w.addPanel(hot, middle); err != nil {
+			return err
+		}
+		return w.addPanel(middle, cold)
+	}
+	if p.count == len(p.panels) {
+		return fmt.Errorf("%w: the posterior needs more than %d panels between %v and %v: narrow the range", ErrRange, maxPanels, e.assume.Range.Min, e.assume.Range.Max)
+	}
+	q := &p.panels[p.count]
+	p.count++
+	q.middle, q.half = middle, half
+	for c := range q.hasCurve {
+		q.hasCurve[c] = false
+	}
+	for i := range p.groups {
+		p.groups[i].project(p)
+	}
+	for c := range p.comps {
+		w.quadraticForm(q, c)
+	}
+	return nil
+}
+
+// project forms ΦᵀWc_m, c_mᵀWc_m′ and µᵀWc_m of a panel's coefficients.
+func (g *groupWork) project(p *processWork) {
+	clear(g.form)
+	r := g.r
+	for j, v := range g.weight {
+		var c [degrees]float64
+		for m := range c {
+			c[m] = v * p.nodes[m][j]
+		}
+		out := g.form
+		for _, φ := range g.phi[j*r : (j+1)*r] {
+			o := (*[degrees]float64)(out)
+			o[0] += c[0] * φ
+			o[1] += c[1] * φ
+			o[2] += c[2] * φ
+			o[3] += c[3] * φ
+			o[4] += c[4] * φ
+			o[5] += c[5] * φ
+			out = out[degrees:]
+		}
+	}
+	for m := range degrees {
+		for j, v := range g.weight {
+			g.weighted[j] = v * p.nodes[m][j]
+		}
+		for k := range m + 1 {
+			sum := 0.0
+			for j, v := range p.nodes[k] {
+				sum += v * g.weighted[j]
+			}
+			g.norm[m*degrees+k] = sum
+		}
+		for i, mean := range p.plan.means {
+			sum := 0.0
+			for j, v := range mean {
+				sum += v * g.weighted[j]
+			}
+			g.cross[i*degrees+m] = sum
+		}
+	}
+}
+
+// quadraticForm writes the polynomial of ln p_c over a panel, without P(ε ≤ 1).
+func (w *Work) quadraticForm(q *panel, c int) {
+	p := w.process
+	k, plan := &p.comps[c], &p.plan.comps[c]
+	g := &p.groups[plan.group]
+	r := g.r
+	meanForm := g.meanForm[plan.mean*r : (plan.mean+1)*r]
+	all := q.x[k.offset : k.offset+r*degrees]
+	var h [degrees * degrees]float64
+	copy(h[:], g.norm[:])
+	for m := range degrees {
+		h[m*degrees] -= g.cross[plan.mean*degrees+m]
+	}
+	h[0] += g.meanNorm[plan.mean] - g.cross[plan.mean*degrees]
+	for i := range r {
+		v := *(*[degrees]float64)(g.form[i*degrees:])
+		v[0] -= meanForm[i]
+		row := k.lower[i*r : i*r+i+1]
+		for b, f := range row[:i] {
+			x := (*[degrees]float64)(all[b*degrees:])
+			v[0] -= f * x[0]
+			v[1] -= f * x[1]
+			v[2] -= f * x[2]
+			v[3] -= f * x[3]
+			v[4] -= f * x[4]
+			v[5] -= f * x[5]
+		}
+		d := row[i]
+		x := (*[degrees]float64)(all[i*degrees:])
+		for m := range x {
+			x[m] = v[m] * d
+		}
+		for m, a := range x {
+			for b := range m + 1 {
+				h[m*degrees+b] -= a * x[b]
+			}
+		}
+	}
+	out := q.log[c*qDegrees : (c+1)*qDegrees]
+	clear(out)
+	for m := range degrees {
+		out[2*m] -= h[m*degrees+m] / 2
+		for b := range m {
+			out[m+b] -= h[m*degrees+b]
+		}
+	}
+	out[0] += k.base
+}
+
+// polynomial evaluates a component's polynomial.
+func polynomial(c *[qDegrees]float64, z float64) float64 {
+	v := c[10]
+	for m := 9; m >= 0; m-- {
+		v = v*z + c[m]
+	}
+	return v
+}
+
+// highest returns the greatest value of a component's polynomial on [−1, 1], where it is, and
+// the standard deviation that its curvature there has.
+func highest(c *[qDegrees]float64) (z, value, width float64) {
+	var slope, bend float64
+	for range 30 {
+		slope, bend = 0, 0
+		v := 0.0
+		for m := qDegrees - 1; m >= 0; m-- { // Horner, with both derivatives
+			bend = bend*z + 2*slope
+			slope = slope*z + v
+			v = v*z + c[m]
+		}
+		value = v
+		if !(bend < 0) { // no maximum near: the higher end
+			a, b := polynomial(c, -1), polynomial(c, 1)
+			if a > b {
+				return -1, a, 1
+			}
+			return 1, b, 1
+		}
+		next := min(max(z-slope/bend, -1), 1)
+		if math.Abs(next-z) < 1e-6 {
+			break
+		}
+		z = next
+	}
+	width = 1 / math.Sqrt(-bend)
+	if slope != 0 {
+		width = min(width, 1/math.Abs(slope))
+	}
+	return z, value, width
+}
+
+// at fills density with each component's at z of a panel, relative to offset, and returns
+// their sum. The density is that of β.
+func (w *Work) posteriorAt(q *panel, z float64) float64 {
+	e, p := w.e, w.process
+	β := q.middle + q.half*z
+	shift := -2*math.Log(β) - p.offset
+	if t := e.assume.Temperature; t.StdK > 0 {
+		d := (1/β - float64(t.Value)) / t.StdK
+		shift -= d * d / 2
+	}
+	for c := range p.density {
+		v := polynomial((*[qDegrees]float64)(q.log[c*qDegrees:]), z) + shift
+		if v > -40 && β > p.safe {
+			v += w.logBelowOne(q, c, z)
+		}
+		p.exponent[c] = max(v, -690)
+	}
+	expTo(p.density, p.exponent)
+	sum := 0.0
+	for _, v := range p.density {
+		sum += v
+	}
+	return sum
+}
+
+// logBelowOne returns ln P(ε ≤ 1 | readings, β, c).
+func (w *Work) logBelowOne(q *panel, c int, z float64) float64 {
+	p := w.process
+	m := len(p.plan.points)
+	if m == 0 {
+		return 0
+	}
+	k := &p.comps[c]
+	if !k.hasCov {
+		w.curveCovariance(c)
+	}
+	if !q.hasCurve[c] {
+		w.curveMean(q, c)
+	}
+	near := false
+	for a := range m {
+		f := (*[degrees]float64)(q.curve[(c*m+a)*degrees:])
+		v := f[5]
+		for i := 4; i >= 0; i-- {
+			v = v*z + f[i]
+		}
+		p.mean[a] = v
+		near = near || v > 0 || v*v < 36*k.cov[a*m+a]
+	}
+	if !near {
+		return 0
+	}
+	copy(p.cov, k.cov)
+	return logOrthant(p.mean, p.cov, m)
+}
+
+// curveCovariance fills a component's covariance of the curve at the plan's points, given
+// the reading: φᵀ(A⁻¹ + ΦᵀWΦ)⁻¹φ.
+func (w *Work) curveCovariance(c int) {
+	p := w.process
+	k, plan := &p.comps[c], &p.plan.comps[c]
+	g := &p.groups[plan.group]
+	r, inner := g.r, p.plan.groups[plan.group].r
+	points := p.plan.points
+	m := len(points)
+	for a, j := range points {
+		u := k.through[a*r : (a+1)*r]
+		clear(u)
+		copy(u, g.phi[j*r:j*r+inner])
+		for i := range r {
+			row := k.lower[i*r : i*r+i+1]
+			v := u[i]
+			for b, f := range row[:i] {
+				v -= f * u[b]
+			}
+			u[i] = v * row[i]
+		}
+	}
+	for a := range m {
+		for b := range a + 1 {
+			v := 0.0
+			ub := k.through[b*r : (b+1)*r]
+			for i, f := range k.through[a*r : (a+1)*r] {
+				v += f * ub[i]
+			}
+			k.cov[a*m+b], k.cov[b*m+a] = v, v
+		}
+	}
+	k.hasCov = true
+}
+
+// curveMean fills a component's posterior mean of the curve at the plan's points, as
+// polynomials over a panel.
+func (w *Work) curveMean(q *panel, c int) {
+	p := w.process
+	k, plan := &p.comps[c], &p.plan.comps[c]
+	r := p.groups[plan.group].r
+	m := len(p.plan.points)
+	for a, j := range p.plan.points {
+		out := (*[degrees]float64)(q.curve[(c*m+a)*degrees:])
+		*out = [degrees]float64{p.plan.means[plan.mean][j]}
+		for i, f := range k.through[a*r : (a+1)*r] {
+			x := (*[degrees]float64)(q.x[k.offset+i*degrees:])
+			for d := range out {
+				out[d] += f * x[d]
+			}
+		}
+	}
+	q.hasCurve[c] = true
+}

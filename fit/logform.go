@@ -65,6 +65,7 @@ func (w *Work) logRatio(y, dy []float64, β float64) {
 // refuses readings below leastSignal standard uncertainties.
 func (w *Work) logReading() error {
 	e, p := w.e, w.process
+	logTo(p.logSignal, w.signal)
 	for j, s := range w.signal {
 		u := w.std[j] / s
 		v := u*u + w.rel*w.rel
@@ -72,7 +73,7 @@ func (w *Work) logReading() error {
 			return &WeakError{e.used[j], s, math.Hypot(w.std[j], w.rel*s)}
 		}
 		p.variance[j] = v
-		l := math.Log(s)
+		l := p.logSignal[j]
 		if e.lines {
 			l -= p.plan.logPeak[j]
 		}

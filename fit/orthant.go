@@ -12,7 +12,7 @@ const maxOrthant = 16
 // traits, Biometrics 30 (1974) 41, cited from memory). Exact for one component and for
 // independent ones; for others within some per cent (TestOrthant).
 func logOrthant(mean, cov []float64, n int) float64 {
-	const settled = -6.0 // further components change P by less than 1e-9 each
+	const settled = -5.0 // further components change P by less than 3e-7 each
 	var done [maxOrthant]bool
 	sum := 0.0
 	for range n {

@@ -70,6 +70,7 @@ const (
 	degrees  = tableDegree + 1
 	qDegrees = 2*tableDegree + 1
 
+	negligible    = -18  // ln of a density beside the greatest
 	panelAccuracy = 1e-7 // of y, at a panel's end
 	maxPanels     = 24
 	maxIntervals  = 768
@@ -175,9 +176,14 @@ func (w *Work) factorise() error {
 		g := &p.groups[plan.group]
 		if plan.group != last {
 			last, logWeight = plan.group, 0
+			product := 1.0
 			for _, v := range g.weight {
-				logWeight += math.Log(v)
+				if product *= v; product > 1e200 {
+					logWeight += math.Log(product)
+					product = 1
+				}
 			}
+			logWeight += math.Log(product)
 		}
 		r, inner := g.r, g.r-e.q
 		l := k.lower
@@ -459,7 +465,7 @@ func highest(c *[qDegrees]float64) (z, value, width float64) {
 	return z, value, width
 }
 
-// at fills density with each component's at z of a panel, relative to offset, and returns
+// posteriorAt fills density with each component's at z of a panel, relative to offset, and returns
 // their sum. The density is that of β.
 func (w *Work) posteriorAt(q *panel, z float64) float64 {
 	e, p := w.e, w.process
@@ -471,7 +477,7 @@ func (w *Work) posteriorAt(q *panel, z float64) float64 {
 	}
 	for c := range p.density {
 		v := polynomial((*[qDegrees]float64)(q.log[c*qDegrees:]), z) + shift
-		if v > -40 && β > p.safe {
+		if v > negligible && β > p.safe {
 			v += w.logBelowOne(q, c, z)
 		}
 		p.exponent[c] = max(v, -690)

@@ -42,6 +42,9 @@ type basisGroup struct {
 	diagonal []float64
 }
 
+// boundPoints is the most channels at which ε ≤ 1 is asked, spread evenly.
+const boundPoints = 8
+
 // widest says how many standard deviations from a component's mean count.
 const widest = 7
 
@@ -88,7 +91,7 @@ func (e *Estimator) compileProcess() error {
 		}
 	}
 	if !s.IsRelative() {
-		p.points = spreadOver(e.n, maxOrthant)
+		p.points = spreadOver(e.n, boundPoints)
 	}
 	if err := p.compileGroups(kept); err != nil {
 		return fmt.Errorf("%w: %v: %w", ErrAssume, s, err)

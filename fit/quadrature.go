@@ -36,6 +36,9 @@ func (w *Work) estimatePosterior(dst *Result) error {
 		return err
 	}
 	hot, cold := w.bracket()
+	if !(hot < cold) { // no component has such a curve: its tails decide, and χ² tells
+		hot = e.hottest
+	}
 	if !(hot < cold) {
 		return fmt.Errorf("%w: no temperature between %v and %v gives an emissivity that %v has: are the signals in W m⁻² sr⁻¹ m⁻¹?", ErrRange, e.assume.Range.Min, e.assume.Range.Max, p.plan.surface)
 	}
@@ -56,7 +59,7 @@ func (w *Work) estimatePosterior(dst *Result) error {
 		if err != nil {
 			return err
 		}
-		if most > 1e-6 {
+		if most > 1e-2 {
 			break
 		}
 		if most > 0 { // the bound, or a known temperature, leaves little of the peak

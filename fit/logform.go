@@ -69,7 +69,7 @@ func (w *Work) logReading() error {
 	for j, s := range w.signal {
 		u := w.std[j] / s
 		v := u*u + w.rel*w.rel
-		if !(s > 0) || !(v*leastSignal*leastSignal <= 1) {
+		if !(s > 0) || !(v*leastSignal*leastSignal <= 1+1e-9) {
 			return &WeakError{e.used[j], s, math.Hypot(w.std[j], w.rel*s)}
 		}
 		p.variance[j] = v

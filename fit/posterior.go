@@ -25,6 +25,7 @@ type processWork struct {
 	shared              []float64 // R, n×q
 	boltzmann, rest     []float64
 	y, dy, limit        []float64
+	inverse             []float64   // 1/√(variance + least diagonal)
 	nodes               [][]float64 // y at a panel's nodes, then its coefficients
 
 	groups []groupWork
@@ -70,8 +71,9 @@ const (
 	degrees  = tableDegree + 1
 	qDegrees = 2*tableDegree + 1
 
-	negligible    = -18  // ln of a density beside the greatest
-	panelAccuracy = 1e-7 // of y, at a panel's end
+	negligible    = -16  // ln of a density beside the greatest
+	panelAccuracy = 1e-4 // of y, in standard deviations of a reading's logarithm
+	firstAccuracy = 5e-7 // of y, where the mass is yet to be found
 	maxPanels     = 24
 	maxIntervals  = 768
 )
@@ -100,8 +102,8 @@ var panelNodes, panelToPower = func() (nodes [degrees]float64, m [degrees][degre
 func (e *Estimator) newProcessWork() *processWork {
 	plan := e.process
 	f := func(n int) []float64 { return make([]float64, n) }
-	p := &processWork{plan: plan, logSignal: f(e.n), variance: f(e.n), shared: f(e.n * e.q), boltzmann: f(e.n), rest: f(e.n), y: f(e.n), dy: f(e.n), limit: f(e.n),
-		density: f(len(plan.comps)), exponent: f(len(plan.comps)), mean: f(len(plan.points)), cov: f(len(plan.points) * len(plan.points)),
+	p := &processWork{plan: plan, logSignal: f(e.n), variance: f(e.n), shared: f(e.n * e.q), boltzmann: f(e.n), rest: f(e.n), y: f(e.n), dy: f(e.n), limit: f(e.n), inverse: f(e.n),
+		density: f(len(plan.comps)), exponent: f(len(plan.comps)), mean: f(plan.most), cov: f(plan.most * plan.most),
 		groups: make([]groupWork, len(plan.groups)), comps: make([]compWork, len(plan.comps)), panels: make([]panel, maxPanels), grid: make([]interval, 0, maxIntervals), coarse: make([]interval, 0, maxIntervals), stack: make([]interval, 0, 64)}
 	for range degrees {
 		p.nodes = append(p.nodes, f(e.n))
@@ -119,14 +121,14 @@ func (e *Estimator) newProcessWork() *processWork {
 	}
 	size := 0
 	for c := range p.comps {
-		r := p.groups[plan.comps[c].group].r
-		p.comps[c] = compWork{lower: f(r * r), offset: size, cov: f(len(plan.points) * len(plan.points)), through: f(r * len(plan.points))}
+		r, m := p.groups[plan.comps[c].group].r, len(plan.groups[plan.comps[c].group].points)
+		p.comps[c] = compWork{lower: f(r * r), offset: size, cov: f(m * m), through: f(r * m)}
 		size += r * degrees
 	}
 	for i := range p.panels {
 		p.panels[i].log = f(len(plan.comps) * qDegrees)
 		p.panels[i].x = f(size)
-		p.panels[i].curve = f(len(plan.comps) * len(plan.points) * degrees)
+		p.panels[i].curve = f(len(plan.comps) * plan.most * degrees)
 		p.panels[i].hasCurve = make([]bool, len(plan.comps))
 	}
 	return p
@@ -232,10 +234,10 @@ func (w *Work) bracket() (hot, cold float64) {
 	e, p := w.e, w.process
 	hot, cold = e.hottest, e.coldest
 	p.safe = math.Inf(1)
-	if p.plan.points == nil {
+	w.fillLimit()
+	if !p.plan.bounded {
 		return hot, cold
 	}
-	w.fillLimit()
 	limit := p.limit
 	seek := func(β float64, bound func(j int) float64, all bool) float64 {
 		for range 40 {
@@ -268,10 +270,15 @@ func (w *Work) bracket() (hot, cold float64) {
 }
 
 // fillLimit writes widest standard deviations of each reading's logarithm, the roughness
-// included, to limit.
+// included, to limit, and the inverse of the least that may count to inverse.
 func (w *Work) fillLimit() {
 	e, p := w.e, w.process
 	for j, v := range p.variance {
+		least := math.Inf(1)
+		for _, g := range p.plan.groups {
+			least = min(least, g.diagonal[j])
+		}
+		p.inverse[j] = 1 / math.Sqrt(v+least)
 		for _, r := range p.shared[j*e.q : (j+1)*e.q] {
 			v += r * r
 		}
@@ -284,8 +291,8 @@ func (w *Work) fillLimit() {
 }
 
 // addPanel fits y over [hot, cold] and prepares the components' densities, halving the
-// panel where a polynomial isn't enough.
-func (w *Work) addPanel(hot, cold float64) error {
+// panel where a polynomial is off by more than panelAccuracy and by more than least.
+func (w *Work) addPanel(hot, cold, least float64) error {
 	e, p := w.e, w.process
 	middle, half := (hot+cold)/2, (cold-hot)/2
 	for i, z := range panelNodes {
@@ -304,15 +311,15 @@ func (w *Work) addPanel(hot, cold float64) error {
 		for m := range c {
 			p.nodes[m][j] = c[m]
 		}
-		worst = max(worst, math.Abs(c[degrees-1]))
+		worst = max(worst, math.Abs(c[degrees-1])*min(p.inverse[j], panelAccuracy/least))
 	}
 	// The last coefficient of Chebyshev's series is 2⁻⁴ of the last power's; the next is
 	// smaller still by the series' ratio, for which a tenth is allowed.
-	if worst/16/10 > panelAccuracy && cold-hot > 1e-9*cold {
-		if err := w.addPanel(hot, middle); err != nil {
+	if worst/160 > panelAccuracy && cold-hot > 1e-3*cold {
+		if err := w.addPanel(hot, middle, least); err != nil {
 			return err
 		}
-		return w.addPanel(middle, cold)
+		return w.addPanel(middle, cold, least)
 	}
 	if p.count == len(p.panels) {
 		return fmt.Errorf("%w: the posterior needs more than %d panels between %v and %v: narrow the range", ErrRange, maxPanels, e.assume.Range.Min, e.assume.Range.Max)
@@ -475,28 +482,33 @@ func (w *Work) posteriorAt(q *panel, z float64) float64 {
 		d := (1/β - float64(t.Value)) / t.StdK
 		shift -= d * d / 2
 	}
-	for c := range p.density {
+	most := math.Inf(-1)
+	for c := range p.exponent {
 		v := polynomial((*[qDegrees]float64)(q.log[c*qDegrees:]), z) + shift
-		if v > negligible && β > p.safe {
-			v += w.logBelowOne(q, c, z)
-		}
 		p.exponent[c] = max(v, -690)
+		most = max(most, v)
 	}
 	expTo(p.density, p.exponent)
 	sum := 0.0
-	for _, v := range p.density {
+	for c, v := range p.density {
+		if β > p.safe {
+			switch {
+			case p.exponent[c] < most+negligible:
+				v = 0
+			case most > negligible:
+				v *= w.belowOne(q, c, z)
+			}
+			p.density[c] = v
+		}
 		sum += v
 	}
 	return sum
 }
 
-// logBelowOne returns ln P(ε ≤ 1 | readings, β, c).
-func (w *Work) logBelowOne(q *panel, c int, z float64) float64 {
+// belowOne returns P(ε ≤ 1 | readings, β, c).
+func (w *Work) belowOne(q *panel, c int, z float64) float64 {
 	p := w.process
-	m := len(p.plan.points)
-	if m == 0 {
-		return 0
-	}
+	m := len(p.plan.groups[p.plan.comps[c].group].points)
 	k := &p.comps[c]
 	if !k.hasCov {
 		w.curveCovariance(c)
@@ -506,7 +518,7 @@ func (w *Work) logBelowOne(q *panel, c int, z float64) float64 {
 	}
 	near := false
 	for a := range m {
-		f := (*[degrees]float64)(q.curve[(c*m+a)*degrees:])
+		f := (*[degrees]float64)(q.curve[(c*p.plan.most+a)*degrees:])
 		v := f[5]
 		for i := 4; i >= 0; i-- {
 			v = v*z + f[i]
@@ -515,10 +527,10 @@ func (w *Work) logBelowOne(q *panel, c int, z float64) float64 {
 		near = near || v > 0 || v*v < 36*k.cov[a*m+a]
 	}
 	if !near {
-		return 0
+		return 1
 	}
 	copy(p.cov, k.cov)
-	return logOrthant(p.mean, p.cov, m)
+	return orthant(p.mean, p.cov, m)
 }
 
 // curveCovariance fills a component's covariance of the curve at the plan's points, given
@@ -528,7 +540,7 @@ func (w *Work) curveCovariance(c int) {
 	k, plan := &p.comps[c], &p.plan.comps[c]
 	g := &p.groups[plan.group]
 	r, inner := g.r, p.plan.groups[plan.group].r
-	points := p.plan.points
+	points := p.plan.groups[plan.group].points
 	m := len(points)
 	for a, j := range points {
 		u := k.through[a*r : (a+1)*r]
@@ -562,9 +574,8 @@ func (w *Work) curveMean(q *panel, c int) {
 	p := w.process
 	k, plan := &p.comps[c], &p.plan.comps[c]
 	r := p.groups[plan.group].r
-	m := len(p.plan.points)
-	for a, j := range p.plan.points {
-		out := (*[degrees]float64)(q.curve[(c*m+a)*degrees:])
+	for a, j := range p.plan.groups[plan.group].points {
+		out := (*[degrees]float64)(q.curve[(c*p.plan.most+a)*degrees:])
 		*out = [degrees]float64{p.plan.means[plan.mean][j]}
 		for i, f := range k.through[a*r : (a+1)*r] {
 			x := (*[degrees]float64)(q.x[k.offset+i*degrees:])

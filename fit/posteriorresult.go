@@ -185,7 +185,7 @@ func (w *Work) fillEmissivity(o *posterior) {
 	for j := range o.value {
 		variance := max(o.unc[j]-o.value[j]*o.value[j], 0)
 		variance += p.dy[j] * p.dy[j] * o.betaU * o.betaU
-		if p.plan.points != nil {
+		if p.plan.bounded {
 			o.value[j] = min(o.value[j], 0)
 		}
 		o.value[j] = math.Exp(o.value[j])

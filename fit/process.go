@@ -19,7 +19,8 @@ type processPlan struct {
 	comps     []compiledComponent
 	groups    []*basisGroup
 	means     [][]float64 // the distinct means of ln ε at the channels
-	points    []int       // channels at which ε ≤ 1 is asked; nil where it isn't
+	bounded   bool        // ε ≤ 1 is asked
+	most      int         // the most channels at which a group asks it
 	lowest    []float64   // the least ln ε that counts at each channel; nil for a relative level
 	logPeak   []float64   // ln c₁Lλ⁻⁵ of each channel
 	columns   int         // the largest of a basis and the shared inputs together
@@ -40,10 +41,16 @@ type basisGroup struct {
 	r        int
 	phi      []float64
 	diagonal []float64
+	points   []int // channels at which ε ≤ 1 is asked
 }
 
-// boundPoints is the most channels at which ε ≤ 1 is asked, spread evenly.
-const boundPoints = 8
+// boundPoints is the most channels at which ε ≤ 1 is asked, and boundGap the standard
+// deviation of ln ε at a channel between them, given the curve at them, that is small enough,
+// where the roughness isn't larger.
+const (
+	boundPoints = 8
+	boundGap    = 0.005
+)
 
 // widest says how many standard deviations from a component's mean count.
 const widest = 7
@@ -90,9 +97,7 @@ func (e *Estimator) compileProcess() error {
 			kept = append(kept, q)
 		}
 	}
-	if !s.IsRelative() {
-		p.points = spreadOver(e.n, boundPoints)
-	}
+	p.bounded = !s.IsRelative()
 	if err := p.compileGroups(kept); err != nil {
 		return fmt.Errorf("%w: %v: %w", ErrAssume, s, err)
 	}
@@ -175,9 +180,7 @@ func conditioned(s emissivity.Process, c int, λ []pyro.Wavelength) (channelPrio
 
 // spreadOver returns up to count of n channels, evenly, both ends included.
 func spreadOver(n, count int) []int {
-	if n <= count {
-		count = n
-	}
+	count = min(count, n)
 	list := make([]int, count)
 	for i := range list {
 		if count > 1 {
@@ -185,6 +188,47 @@ func spreadOver(n, count int) []int {
 		}
 	}
 	return list
+}
+
+// boundAt returns the least number of channels, boundPoints at most, that leave no component's
+// curve more open between them than the roughness or boundGap.
+func boundAt(group []channelPrior, n int) []int {
+	allowed := max(group[0].roughness, boundGap)
+	for count := 1; ; count++ {
+		points := spreadOver(n, count)
+		if count >= min(n, boundPoints) || !slices.ContainsFunc(group, func(q channelPrior) bool { return openBetween(q.cov, points) > allowed*allowed }) {
+			return points
+		}
+	}
+}
+
+// openBetween returns the largest variance of a channel given those at the points.
+func openBetween(cov *mat.SymDense, points []int) float64 {
+	n, _ := cov.Dims()
+	m := len(points)
+	inner, cross := mat.NewSymDense(m, nil), mat.NewDense(m, n, nil)
+	for a, i := range points {
+		for b, j := range points[:a+1] {
+			inner.SetSym(a, b, cov.At(i, j))
+		}
+		inner.SetSym(a, a, inner.At(a, a)*(1+1e-10))
+		for j := range n {
+			cross.Set(a, j, cov.At(i, j))
+		}
+	}
+	var chol mat.Cholesky
+	if !chol.Factorize(inner) {
+		return 0 // the points fix each other, and a constant curve everything
+	}
+	var solved mat.Dense
+	if chol.SolveTo(&solved, cross) != nil {
+		return 0
+	}
+	worst := 0.0
+	for j := range n {
+		worst = max(worst, cov.At(j, j)-mat.Dot(cross.ColView(j), solved.ColView(j)))
+	}
+	return worst
 }
 
 // compileGroups builds the bases and the components on them.
@@ -214,7 +258,7 @@ func (p *processPlan) compileGroups(priors []channelPrior) error {
 			return err
 		}
 	}
-	if p.points == nil {
+	if !p.bounded {
 		return nil
 	}
 	p.lowest = make([]float64, n)
@@ -241,6 +285,10 @@ const (
 func (p *processPlan) addGroup(group []channelPrior) error {
 	n := len(p.logPeak)
 	g := &basisGroup{diagonal: make([]float64, n)}
+	if p.bounded {
+		g.points = boundAt(group, n)
+		p.most = max(p.most, len(g.points))
+	}
 	allowed := max(allowedShare*group[0].roughness, allowedLeast)
 	allowed *= allowed
 	mean := mat.NewSymDense(n, nil)
@@ -384,19 +432,19 @@ func (p *processPlan) addComponent(q channelPrior, g *basisGroup, v *mat.Dense, 
 			}
 		}
 	}
-	if m := len(p.points); m > 0 {
+	if m := len(g.points); m > 0 {
 		mean, cov := make([]float64, m), make([]float64, m*m)
-		for a, i := range p.points {
+		for a, i := range g.points {
 			mean[a] = q.mean[i]
-			for b, j := range p.points {
+			for b, j := range g.points {
 				cov[a*m+b] = q.cov.At(i, j)
 			}
 		}
-		l := logOrthant(mean, cov, m)
-		if math.IsInf(l, -1) {
+		p := orthant(mean, cov, m)
+		if p == 0 {
 			return fmt.Errorf("a component has no curve with ε ≤ 1")
 		}
-		c.constant -= l
+		c.constant -= math.Log(p)
 	}
 	p.comps = append(p.comps, c)
 	return nil

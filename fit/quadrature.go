@@ -3,6 +3,7 @@ package fit
 import (
 	"fmt"
 	"math"
+	"slices"
 
 	"candent/pyro"
 )
@@ -24,7 +25,7 @@ func (e *Estimator) newPosterior() *posterior {
 }
 
 // quadratureTolerance is the error that one interval may bring, of the whole.
-const quadratureTolerance = 1e-6
+const quadratureTolerance = 1e-5
 
 // estimatePosterior fills dst with the posterior of the reading that load has taken.
 func (w *Work) estimatePosterior(dst *Result) error {
@@ -42,16 +43,12 @@ func (w *Work) estimatePosterior(dst *Result) error {
 	if !(hot < cold) {
 		return fmt.Errorf("%w: no temperature between %v and %v gives an emissivity that %v has: are the signals in W m⁻² sr⁻¹ m⁻¹?", ErrRange, e.assume.Range.Min, e.assume.Range.Max, p.plan.surface)
 	}
-	p.count = 0
-	if err := w.addPanel(hot, cold); err != nil {
+	if err := w.layPanels(hot, cold, firstAccuracy); err != nil {
 		return err
 	}
-	p.offset = math.Inf(-1)
-	for i := range p.count {
-		q := &p.panels[i]
-		for c := range p.comps {
-			z, v, _ := highest((*[qDegrees]float64)(q.log[c*qDegrees:]))
-			p.offset = max(p.offset, v-2*math.Log(q.middle+q.half*z))
+	if slices.Max(p.inverse)*firstAccuracy > panelAccuracy {
+		if err := w.narrow(hot, cold); err != nil {
+			return err
 		}
 	}
 	for range 20 {
@@ -69,6 +66,37 @@ func (w *Work) estimatePosterior(dst *Result) error {
 		}
 	}
 	return dst.takePosterior(w)
+}
+
+// layPanels covers [hot, cold] and finds the greatest density, before ε ≤ 1 is asked.
+func (w *Work) layPanels(hot, cold, least float64) error {
+	p := w.process
+	p.count = 0
+	if err := w.addPanel(hot, cold, least); err != nil {
+		return err
+	}
+	p.offset = math.Inf(-1)
+	for i := range p.count {
+		q := &p.panels[i]
+		for c := range p.comps {
+			z, v, _ := highest((*[qDegrees]float64)(q.log[c*qDegrees:]))
+			p.offset = max(p.offset, v-2*math.Log(q.middle+q.half*z))
+		}
+	}
+	return nil
+}
+
+// narrow lays the panels again, over what has mass, as accurately as precise readings need.
+func (w *Work) narrow(hot, cold float64) error {
+	p := w.process
+	first, last := cold, hot
+	for i := range p.count {
+		q := &p.panels[i]
+		if from, to, _ := w.region(q); to > from {
+			first, last = min(first, q.middle+q.half*from), max(last, q.middle+q.half*to)
+		}
+	}
+	return w.layPanels(first, last, 1e-13)
 }
 
 // integrate lays the grid over all panels by adaptive Simpson's rule and returns the greatest
@@ -151,7 +179,7 @@ func (w *Work) region(q *panel) (from, to, step float64) {
 		}
 		from, to = min(from, z-reach), max(to, z+reach)
 		if below < 12 {
-			step = min(step, 1.25*width)
+			step = min(step, 1.6*width)
 		}
 	}
 	return max(from, -1), min(to, 1), step

@@ -39,20 +39,20 @@ type Kind struct {
 //	              Matter 7 (1970) and 8 (1972), chromium and chromium oxide
 func Kinds() []Kind {
 	return []Kind{
-		{"metal", BareTransitionMetal(), Sourced, "level from B&W 1915 (13 metals at 0.65 µm, mean 0.36), slope −0.55 ± 0.4 from constants of 10 metals, 0.65 to 1.6 µm; correlation lengths are judgement"},
-		{"bright", BrightMetal(), Sourced, "level and spread from constants of Al, Cu, Ag and Au, 0.65 to 2.2 µm, widened by the factor 1 to 2.4 between films and bulk specimens; correlation lengths are judgement"},
+		{"metal", BareTransitionMetal(), Sourced, "level from B&W 1915 (13 metals at 0.65 µm, mean 0.36, standard deviation of ln ε 0.14, widened to 0.2), slope −0.57 ± 0.38 from constants of 11 metals, 0.65 to 1.6 µm; the smooth term (0.2) is judgement"},
+		{"bright", BrightMetal(), Sourced, "level and spread from constants of Al, Cu, Ag and Au at 1.0 µm (0.024, standard deviation of ln ε 0.70), raised for the factor 1 to 2.4 between films and bulk specimens; slope −1.1 ± 0.3 from 0.65 to 2.2 µm, widened for the interband edge; the other terms are judgement"},
 		{"growing-oxide", GrowingOxide(), Unvalidated, "spread 0.7 of the level while the film is thin: TPRC chromium strip 0.055 → 0.48; that fringes correlate over a few tenths in ln λ is judgement"},
 		{"dark-scale", DarkScale(), Judged, "0.82 with 0.10 to 0.12 from B&W 1915 (Fe₃O₄, NiO, Cr₂O₃, melted, 0.53 to 0.89) and TPRC Cr₂O₃ (0.67 to 0.96); the melted ones lie at its lower edge"},
 		{"white-ceramic", WhiteCeramic(), Unvalidated, "spread 0.45 from a factor of two between grades; level from Al₂O₃ 0.40 and ZrO₂ 0.29 at their melting points (Dubrovinsky & Saxena 1999) and lime 0.35 to 0.70; often semi-transparent"},
 		{"iron-bearing-ceramic", IronBearingCeramic(), Unvalidated, "spread 0.2 and level 0.75 are judgement"},
-		{"carbon", Carbon(), Sourced, "level, slope and spread from seven graphites, 0.65 to 5 µm, the spread widened to 0.15 for machined or oxidised surfaces"},
+		{"carbon", Carbon(), Judged, "level, slope and spread from seven graphites of one report, 0.65 to 5 µm, the spread widened to 0.13 for machined or oxidised surfaces"},
 		{"liquid-metal", LiquidMetal(), Judged, "level 0.37 from B&W 1915 (eight liquid steels, Fe, Ni, Co, Pd); spread 0.25 for patches of oxide and slag, and the slope of solid metals, are judgement"},
 	}
 }
 
-// BareTransitionMetal is clean Fe, Ni, Co, Cr, Mo, W, Pt, Pd, Ir, Rh, Ti, V or Zr, solid.
-// B&W 1915 give 0.29 to 0.43 at 0.65 µm for all but Ti (0.63), standard deviation of ln ε 0.13
-// without it. Beyond 2 µm the slope steepens to −1 and more.
+// BareTransitionMetal is clean Fe, Ni, Co, Cr, Mo, W, Pt, Pd, Ir, Rh, V, Nb or Zr, solid. B&W
+// 1915 give 0.29 to 0.49 for them at 0.65 µm, and 0.63 for Ti, which this kind does not claim.
+// Beyond 2 µm the slope steepens to −1 and more: there it is not validated.
 func BareTransitionMetal() Process {
 	return NewProcess("bare transition metal", overLengths(Component{Level: 0.36, Centre: 0.65 * pyro.Micrometre,
 		Slope: -0.55, SlopeSpread: 0.4, Spread: 0.2, Smooth: Term{Std: 0.2}, Roughness: channelRoughness})...)
@@ -88,7 +88,8 @@ func IronBearingCeramic() Process {
 }
 
 // Carbon is graphite, machined or oxidised. Seven polished ones give 0.773 ± 0.030 at 0.9 µm,
-// 0.657 ± 0.027 at 1.6 and 0.464 ± 0.019 at 5 µm; rough and porous carbon is flatter and higher.
+// 0.657 ± 0.027 at 1.6 and 0.464 ± 0.019 at 5 µm, slopes of −0.25 to −0.30; rough and porous
+// carbon is flatter and higher.
 func Carbon() Process {
 	return NewProcess("carbon", overLengths(Component{Level: 0.78, Centre: 0.9 * pyro.Micrometre,
 		Slope: -0.2, SlopeSpread: 0.15, Spread: 0.12, Smooth: Term{Std: 0.05}, Roughness: channelRoughness})...)

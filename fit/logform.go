@@ -1,16 +1,14 @@
 package fit
 
-import (
-	"math"
-)
+import "math"
 
 // The joint between a reading and a process: at one temperature, what the emissivities
 // would have to be, and, once per reading, how uncertain the readings leave their logarithms.
 //
 // The logarithmic form takes ln s for Gaussian, with the relative variance as its variance.
-// That holds where a reading exceeds its standard uncertainty leastSignal times or more: the
-// logarithm of a Gaussian reading is then Gaussian but for a skewness below 3/20 and a mean
-// that is low by half the relative variance, 0.00125 at most (TestLogarithmicForm).
+// That is done where a reading exceeds its standard uncertainty leastSignal times or more, and
+// refused elsewhere. At leastSignal the ends of an interval move by less than 0.2 of the
+// noise's own share of it, 1.5 relative variances of ε and a skewness (TestLogarithmicForm).
 
 // leastSignal is the least ratio of a reading to its standard uncertainty.
 const leastSignal = 20

@@ -6,30 +6,33 @@ import "math"
 const maxOrthant = 16
 
 // orthant returns P(x ≤ 0 in all n components) of a Gaussian with the given mean and
-// covariance (row by row), both of which it overwrites. It conditions on one component after
+// covariance (row by row, the lower half), both of which it overwrites. It conditions on one component after
 // the other, that most likely to exceed 0 first, and takes what is left for Gaussian with the
 // moments of the truncated one (N. R. Mendell, R. C. Elston, Multifactorial qualitative
 // traits, Biometrics 30 (1974) 41, cited from memory). Exact for one component and for
 // independent ones; for others within ten per cent of P (TestOrthant).
 func orthant(mean, cov []float64, n int) float64 {
 	const settled = tailFrom // further components change P by less than 3e-7 each
-	var done [maxOrthant]bool
+	var left [maxOrthant]int // components not yet conditioned on
+	var column [maxOrthant]float64
+	for i := range n {
+		left[i] = i
+	}
 	product := 1.0
-	for range n {
+	for count := n; count > 0; {
 		at, z := -1, float64(settled)
-		for i := range n {
-			if done[i] {
-				continue
-			}
-			v := cov[i*n+i]
+		for a, i := range left[:count] {
+			m, v := mean[i], cov[i*n+i]
 			if v <= 0 {
-				if mean[i] > 0 {
+				if m > 0 {
 					return 0
 				}
 				continue
 			}
-			if s := mean[i] / math.Sqrt(v); s > z {
-				at, z = i, s
+			if m > 0 || m*m < z*z*v {
+				if s := m / math.Sqrt(v); s > z {
+					at, z = a, s
+				}
 			}
 		}
 		if at < 0 {
@@ -38,22 +41,20 @@ func orthant(mean, cov []float64, n int) float64 {
 		if z >= tailTo {
 			return 0
 		}
-		done[at] = true
 		p, h := upperTail(z)
 		product *= p
+		on := left[at]
+		count--
+		left[at] = left[count]
+		inverse := 1 / math.Sqrt(cov[on*n+on])
 		less := h * (h - z) // E = −h, variance 1 − h(h − z)
-		inv := 1 / math.Sqrt(cov[at*n+at])
-		for i := range n {
-			if done[i] {
-				continue
-			}
-			f := cov[i*n+at] * inv
+		for a, i := range left[:count] {
+			f := cov[max(i, on)*n+min(i, on)] * inverse
 			mean[i] -= f * h
-			f *= less * inv
-			for k := range n {
-				if !done[k] {
-					cov[i*n+k] -= f * cov[k*n+at]
-				}
+			column[a] = f
+			f *= less
+			for b, k := range left[:a+1] {
+				cov[max(i, k)*n+min(i, k)] -= f * column[b]
 			}
 		}
 	}

@@ -71,7 +71,7 @@ const (
 	degrees  = tableDegree + 1
 	qDegrees = 2*tableDegree + 1
 
-	negligible    = -16  // ln of a density beside the greatest
+	negligible    = -12  // ln of a density beside the greatest
 	panelAccuracy = 1e-4 // of y, in standard deviations of a reading's logarithm
 	firstAccuracy = 5e-7 // of y, where the mass is yet to be found
 	maxPanels     = 24
@@ -85,6 +85,7 @@ type panel struct {
 	x            []float64 // L⁻¹ΦᵀW(c − µ) of each component, r×degrees from its offset
 	curve        []float64 // posterior mean of ln ε at the plan's points, degrees each
 	hasCurve     []bool
+	low          bool // no component's polynomial needs more than lowDegree
 }
 
 // interval is a piece of the posterior with the density at its ends and middle.
@@ -146,17 +147,7 @@ func (w *Work) factorise() error {
 				g.phi[j*r+plan.r+k] = p.shared[j*e.q+k]
 			}
 		}
-		clear(g.gram)
-		for j, v := range g.weight {
-			row := g.phi[j*r : (j+1)*r]
-			for a, φ := range row {
-				f := v * φ
-				out := g.gram[a*r : a*r+a+1]
-				for b := range out {
-					out[b] += f * row[b]
-				}
-			}
-		}
+		g.formGram()
 		clear(g.meanForm)
 		for m, mean := range p.plan.means {
 			out := g.meanForm[m*r : (m+1)*r]
@@ -201,9 +192,7 @@ func (w *Work) factorise() error {
 					v++
 				}
 				lb := l[b*r : b*r+b+1]
-				for m, f := range row[:b] {
-					v -= f * lb[m]
-				}
+				v -= dot(row[:b], lb)
 				if b < a {
 					row[b] = v * lb[b]
 					continue
@@ -226,47 +215,85 @@ func (w *Work) factorise() error {
 	return nil
 }
 
+// dot returns aᵀb over the length of a, in four independent sums.
+func dot(a, b []float64) float64 {
+	b = b[:len(a)]
+	var s0, s1, s2, s3 float64
+	i := 0
+	for ; i+4 <= len(a); i += 4 {
+		s0 += a[i] * b[i]
+		s1 += a[i+1] * b[i+1]
+		s2 += a[i+2] * b[i+2]
+		s3 += a[i+3] * b[i+3]
+	}
+	for ; i < len(a); i++ {
+		s0 += a[i] * b[i]
+	}
+	return (s0 + s1) + (s2 + s3)
+}
+
+// formGram forms the lower half of ΦᵀWΦ, four channels at a time.
+func (g *groupWork) formGram() {
+	clear(g.gram)
+	r := g.r
+	j := 0
+	for ; j+4 <= len(g.weight); j += 4 {
+		r0, r1, r2, r3 := g.phi[j*r:(j+1)*r], g.phi[(j+1)*r:(j+2)*r], g.phi[(j+2)*r:(j+3)*r], g.phi[(j+3)*r:(j+4)*r]
+		w0, w1, w2, w3 := g.weight[j], g.weight[j+1], g.weight[j+2], g.weight[j+3]
+		for a := range r {
+			f0, f1, f2, f3 := w0*r0[a], w1*r1[a], w2*r2[a], w3*r3[a]
+			out := g.gram[a*r : a*r+a+1]
+			b0, b1, b2, b3 := r0[:len(out)], r1[:len(out)], r2[:len(out)], r3[:len(out)]
+			for b := range out {
+				out[b] += (f0*b0[b] + f1*b1[b]) + (f2*b2[b] + f3*b3[b])
+			}
+		}
+	}
+	for ; j < len(g.weight); j++ {
+		row := g.phi[j*r : (j+1)*r]
+		for a, φ := range row {
+			f := g.weight[j] * φ
+			out := g.gram[a*r : a*r+a+1]
+			for b := range out {
+				out[b] += f * row[b]
+			}
+		}
+	}
+}
+
 // bracket returns the β between which the posterior has its mass: at the hot end every
 // channel needs the least emissivity that counts, at the cold end one channel needs an
 // emissivity beyond 1 by widest standard deviations of the readings; safe is where one comes
-// as close below 1. y rises with β and is concave, so that Newton's steps don't overshoot.
+// as close below 1. y rises with β and is concave, so that Newton's steps end on the hot side
+// of what they seek: safe is iterated, the hot end is one step and errs outwards, the cold end,
+// close to safe, one step that errs by the square of that distance.
 func (w *Work) bracket() (hot, cold float64) {
 	e, p := w.e, w.process
-	hot, cold = e.hottest, e.coldest
 	p.safe = math.Inf(1)
 	w.fillLimit()
 	if !p.plan.bounded {
-		return hot, cold
+		return e.hottest, e.coldest
 	}
-	limit := p.limit
-	seek := func(β float64, bound func(j int) float64, all bool) float64 {
-		for range 40 {
-			w.logRatio(p.y, p.dy, β)
-			step := math.Inf(1)
-			if all {
-				step = math.Inf(-1)
-			}
-			for j := range p.y {
-				s := (bound(j) - p.y[j]) / p.dy[j]
-				if all {
-					step = max(step, s)
-				} else {
-					step = min(step, s)
-				}
-			}
-			next := min(max(β+step, e.hottest), e.coldest)
-			done := math.Abs(next-β) <= 1e-4*β
-			β = next
-			if done {
-				break
-			}
+	β := math.Sqrt(e.hottest * e.coldest)
+	for range 40 {
+		w.logRatio(p.y, p.dy, β)
+		step := math.Inf(1)
+		for j, y := range p.y {
+			step = min(step, (-p.limit[j]-y)/p.dy[j])
 		}
-		return β
+		p.safe = min(max(β+step, e.hottest), e.coldest)
+		if math.Abs(p.safe-β) <= 1e-3*β {
+			break
+		}
+		β = p.safe
 	}
-	p.safe = seek(hot, func(j int) float64 { return -limit[j] }, false)
-	cold = seek(p.safe, func(j int) float64 { return limit[j] }, false)
-	hot = seek(p.safe, func(j int) float64 { return p.plan.lowest[j] - limit[j] }, true)
-	return hot, cold
+	toHot, toCold := math.Inf(-1), math.Inf(1)
+	for j, y := range p.y { // y is that at β, as good as at safe
+		inverse := 1 / p.dy[j]
+		toHot = max(toHot, (p.plan.lowest[j]-p.limit[j]-y)*inverse)
+		toCold = min(toCold, (p.limit[j]-y)*inverse)
+	}
+	return max(β+toHot, e.hottest), min(β+toCold, e.coldest)
 }
 
 // fillLimit writes widest standard deviations of each reading's logarithm, the roughness
@@ -333,8 +360,14 @@ func (w *Work) addPanel(hot, cold, least float64) error {
 	for i := range p.groups {
 		p.groups[i].project(p)
 	}
+	q.low = true
 	for c := range p.comps {
 		w.quadraticForm(q, c)
+		rest := 0.0
+		for _, v := range q.log[c*qDegrees+lowDegree+1 : (c+1)*qDegrees] {
+			rest += math.Abs(v)
+		}
+		q.low = q.low && rest < lowRest
 	}
 	return nil
 }
@@ -342,21 +375,26 @@ func (w *Work) addPanel(hot, cold, least float64) error {
 // project forms ΦᵀWc_m, c_mᵀWc_m′ and µᵀWc_m of a panel's coefficients.
 func (g *groupWork) project(p *processWork) {
 	clear(g.form)
-	r := g.r
-	for j, v := range g.weight {
-		var c [degrees]float64
+	r, n := g.r, len(g.weight)
+	for j := 0; j < n; j += 2 {
+		k := min(j+1, n-1)
+		var c, d [degrees]float64 // of two channels; of none beyond the last
 		for m := range c {
-			c[m] = v * p.nodes[m][j]
+			c[m] = g.weight[j] * p.nodes[m][j]
+			if k > j {
+				d[m] = g.weight[k] * p.nodes[m][k]
+			}
 		}
-		out := g.form
-		for _, φ := range g.phi[j*r : (j+1)*r] {
+		out, second := g.form, g.phi[k*r:(k+1)*r]
+		for i, φ := range g.phi[j*r : (j+1)*r] {
+			χ := second[i]
 			o := (*[degrees]float64)(out)
-			o[0] += c[0] * φ
-			o[1] += c[1] * φ
-			o[2] += c[2] * φ
-			o[3] += c[3] * φ
-			o[4] += c[4] * φ
-			o[5] += c[5] * φ
+			o[0] += c[0]*φ + d[0]*χ
+			o[1] += c[1]*φ + d[1]*χ
+			o[2] += c[2]*φ + d[2]*χ
+			o[3] += c[3]*φ + d[3]*χ
+			o[4] += c[4]*φ + d[4]*χ
+			o[5] += c[5]*φ + d[5]*χ
 			out = out[degrees:]
 		}
 	}
@@ -365,18 +403,10 @@ func (g *groupWork) project(p *processWork) {
 			g.weighted[j] = v * p.nodes[m][j]
 		}
 		for k := range m + 1 {
-			sum := 0.0
-			for j, v := range p.nodes[k] {
-				sum += v * g.weighted[j]
-			}
-			g.norm[m*degrees+k] = sum
+			g.norm[m*degrees+k] = dot(p.nodes[k], g.weighted)
 		}
 		for i, mean := range p.plan.means {
-			sum := 0.0
-			for j, v := range mean {
-				sum += v * g.weighted[j]
-			}
-			g.cross[i*degrees+m] = sum
+			g.cross[i*degrees+m] = dot(mean, g.weighted)
 		}
 	}
 }
@@ -432,11 +462,18 @@ func (w *Work) quadraticForm(q *panel, c int) {
 
 // polynomial evaluates a component's polynomial.
 func polynomial(c *[qDegrees]float64, z float64) float64 {
-	v := c[10]
-	for m := 9; m >= 0; m-- {
-		v = v*z + c[m]
-	}
-	return v
+	return c[0] + z*(c[1]+z*(c[2]+z*(c[3]+z*(c[4]+z*(c[5]+z*(c[6]+z*(c[7]+z*(c[8]+z*(c[9]+z*c[10])))))))))
+}
+
+// lowDegree is that of the polynomials where the rest is below lowRest.
+const (
+	lowDegree = 5
+	lowRest   = 1e-5
+)
+
+// lowPolynomial is polynomial up to lowDegree.
+func lowPolynomial(c *[qDegrees]float64, z float64) float64 {
+	return c[0] + z*(c[1]+z*(c[2]+z*(c[3]+z*(c[4]+z*c[5]))))
 }
 
 // highest returns the greatest value of a component's polynomial on [−1, 1], where it is, and
@@ -483,10 +520,22 @@ func (w *Work) posteriorAt(q *panel, z float64) float64 {
 		shift -= d * d / 2
 	}
 	most := math.Inf(-1)
+	log := q.log
 	for c := range p.exponent {
-		v := polynomial((*[qDegrees]float64)(q.log[c*qDegrees:]), z) + shift
-		p.exponent[c] = max(v, -690)
-		most = max(most, v)
+		k := (*[qDegrees]float64)(log)
+		log = log[qDegrees:]
+		v := lowPolynomial(k, z)
+		if !q.low {
+			v = polynomial(k, z)
+		}
+		v += shift
+		if v > most {
+			most = v
+		}
+		if v < -690 {
+			v = -690
+		}
+		p.exponent[c] = v
 	}
 	expTo(p.density, p.exponent)
 	sum := 0.0

@@ -397,3 +397,72 @@ func TestUpperTail(t *testing.T) {
 		}
 	}
 }
+
+// TestLogarithmicForm: one reading of leastSignal standard uncertainties, the worst that is
+// taken: the posterior of T with ln s for Gaussian against that with s for Gaussian, both by
+// brute force over ln ε. Where the readings' noise is all there is (ε exact), ends and median
+// differ by less than 0.2 of the posterior's standard deviation, on an Unknown surface by less
+// than 0.015. Both fall with the signal: in ln ε the difference is 1.5 relative variances (the
+// mean of ln m given s, ln m flat beforehand) and a skewness.
+func TestLogarithmicForm(t *testing.T) {
+	b := testLines(t, 0.9, 0.9, 1)[0]
+	const T0, lo, hi, steps = 1500.0, 1100.0, 2100.0, 20000
+	s := 0.5 * b.Radiance(T0)
+	for _, c := range []struct {
+		level, std, signal, allowed float64
+	}{
+		{0.5, 0, leastSignal, 0.2}, {0.42, 0.45, leastSignal, 0.015},
+		{0.5, 0, 4 * leastSignal, 0.05}, {0.42, 0.45, 4 * leastSignal, 0.0015},
+	} {
+		rel := 1 / c.signal
+		var q [2][3]float64
+		var spread float64
+		for form := range q {
+			f := make([]float64, steps+1)
+			total, sum, squares := 0.0, 0.0, 0.0
+			for i := range f {
+				T := lo + (hi-lo)*float64(i)/steps
+				y := math.Log(s / b.Radiance(pyro.Temperature(T)))
+				// ln ε where the reading leaves any: within 9 of its standard deviations of y
+				from, n := y-9*rel, 60
+				if c.std == 0 {
+					from, n = math.Log(c.level), 1
+				}
+				for k := range n {
+					x := from + 18*rel*float64(k)/60
+					if x > 0 {
+						continue
+					}
+					p := 1.0
+					if c.std > 0 {
+						z := (x - math.Log(c.level)) / c.std
+						p = math.Exp(-z * z / 2)
+					}
+					z := (y - x) / rel
+					if form == 1 {
+						z = (1 - math.Exp(x-y)) / rel // (s − m)/σ, σ = rel·s
+					}
+					f[i] += p * math.Exp(-z*z/2)
+				}
+				total, sum, squares = total+f[i], sum+f[i]*T, squares+f[i]*T*T
+			}
+			mean := sum / total
+			spread = math.Sqrt(squares/total - mean*mean)
+			below := 0.0
+			for i, p := range f {
+				for k, share := range []float64{0.025, 0.5, 0.975} {
+					if below < share*total && below+p >= share*total {
+						q[form][k] = lo + (hi-lo)*(float64(i)+(share*total-below)/p)/steps
+					}
+				}
+				below += p
+			}
+		}
+		for k := range q[0] {
+			if off := math.Abs(q[0][k]-q[1][k]) / spread; off > c.allowed {
+				t.Errorf("level %g ± %g, signal %g: %.3f K against %.3f K, %.4f of ± %.3f K, allowed %g", c.level, c.std, c.signal, q[0][k], q[1][k], off, spread, c.allowed)
+			}
+		}
+		t.Logf("level %g ± %g, signal %g σ: %.2f and %.2f K, ± %.2f K", c.level, c.std, c.signal, q[0], q[1], spread)
+	}
+}

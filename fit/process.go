@@ -271,10 +271,11 @@ func (p *processPlan) compileGroups(priors []channelPrior) error {
 	return nil
 }
 
-// allowance is the standard deviation of ln ε that a basis may leave out, as a share of the
-// roughness per channel, and where there is none.
+// The standard deviation of ln ε that a basis may leave out: as a share of the roughness per
+// channel, the same with a rough term, and where there is no roughness.
 const (
 	allowedShare = 0.2
+	allowedRough = 0.4
 	allowedLeast = 1e-4
 )
 
@@ -289,7 +290,11 @@ func (p *processPlan) addGroup(group []channelPrior) error {
 		g.points = boundAt(group, n)
 		p.most = max(p.most, len(g.points))
 	}
-	allowed := max(allowedShare*group[0].roughness, allowedLeast)
+	share := allowedShare
+	if group[0].rough {
+		share = allowedRough
+	}
+	allowed := max(share*group[0].roughness, allowedLeast)
 	allowed *= allowed
 	mean := mat.NewSymDense(n, nil)
 	for _, q := range group {

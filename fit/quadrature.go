@@ -179,7 +179,7 @@ func (w *Work) region(q *panel) (from, to, step float64) {
 		}
 		from, to = min(from, z-reach), max(to, z+reach)
 		if below < 12 {
-			step = min(step, 1.6*width)
+			step = min(step, 2*width)
 		}
 	}
 	return max(from, -1), min(to, 1), step

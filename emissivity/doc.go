@@ -15,6 +15,12 @@
 //	Exponential(m) ln ε = log level + log slope·d + …       m = 1 … 3
 //	PowerLaw       ln ε = log level + exponent·ln(λ/λc)
 //
-// Values of type Family are immutable: methods return changed copies. They are safe for
+// # The unknown surface
+//
+// Process is a random curve: ln ε is a mixture of Gaussian processes in ln λ, with ε ≤ 1.
+// Unknown is the default for surfaces of ε ≥ 0.2 that nobody characterised; Kinds lists
+// narrower ones by name, AnySurface mixes them, About takes a handbook curve ± a spread.
+//
+// Values of type Family and Process are immutable: methods return changed copies. They are safe for
 // concurrent use.
 package emissivity

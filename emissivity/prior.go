@@ -9,7 +9,7 @@ import (
 )
 
 // Surface is what an estimator takes as its assumption on the emissivity. Of its kinds
-// this package has one, Family.
+// this package has two: Family, few parameters, and Process, a random curve.
 type Surface interface {
 	String() string
 	Err() error

@@ -63,7 +63,6 @@ type compWork struct {
 	offset  int       // into a panel's x
 	cov     []float64 // of the curve at the plan's points, given the reading
 	hasCov  bool
-	peak    float64 // of the logarithm of the density over all panels
 	through []float64
 }
 

@@ -220,12 +220,12 @@ func TestProcessesRefuse(t *testing.T) {
 		cov[5*i] = 1
 	}
 	for want, a := range map[string]fit.Assume{
-		"Shared inputs":        {Emissivity: emissivity.Unknown(), Noise: fit.Covariance(cov)},
-		"state the size":       {Emissivity: emissivity.Unknown(), Noise: fit.Relative(0.01).UpToFactor()},
-		"mask":                 {Emissivity: emissivity.Unknown(), Loss: fit.Huber(1.345)},
-		"exactly known":        {Emissivity: emissivity.Unknown(), Temperature: fit.TemperaturePrior{Value: 1500}},
-		"does its curve end":   {Emissivity: emissivity.About("short", short, 0.1)},
-		"Centre":               {Emissivity: emissivity.NewProcess("x", emissivity.Component{Weight: 1, Level: 0.5, Slope: 1})},
+		"Shared inputs":      {Emissivity: emissivity.Unknown(), Noise: fit.Covariance(cov)},
+		"state the size":     {Emissivity: emissivity.Unknown(), Noise: fit.Relative(0.01).UpToFactor()},
+		"mask":               {Emissivity: emissivity.Unknown(), Loss: fit.Huber(1.345)},
+		"exactly known":      {Emissivity: emissivity.Unknown(), Temperature: fit.TemperaturePrior{Value: 1500}},
+		"does its curve end": {Emissivity: emissivity.About("short", short, 0.1)},
+		"Centre":             {Emissivity: emissivity.NewProcess("x", emissivity.Component{Weight: 1, Level: 0.5, Slope: 1})},
 	} {
 		_, err := fit.New(bands, a)
 		if !errors.Is(err, fit.ErrAssume) || !strings.Contains(err.Error(), want) {

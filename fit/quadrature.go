@@ -153,7 +153,7 @@ func (w *Work) integrate() (most float64, err error) {
 			right := interval{middle, k.to, k.fm, w.posteriorAt(q, (middle+k.to)/2), k.fb, k.panel}
 			wrong := math.Abs(left.mass()+right.mass()-k.mass()) * q.half / 15
 			most = max(most, left.fm, right.fm)
-			if wrong > quadratureTolerance*total && len(p.grid)+len(p.stack)+i+4 < maxIntervals && len(p.stack)+2 < cap(p.stack) {
+			if wrong > quadratureTolerance*total && len(p.grid)+2*(len(p.stack)+i+2) < maxIntervals && len(p.stack)+2 < cap(p.stack) {
 				p.stack = append(p.stack, right, left)
 				continue
 			}
@@ -264,6 +264,9 @@ const openShare = 0.1
 // ends returns the equal-tail interval of probability p in β; an end is open where the
 // range cuts off more than openShare of what its tail holds.
 func (o *posterior) ends(p float64, e *Estimator) (hot, cold end) {
+	if len(o.grid) == 0 {
+		return end{e.hottest, true}, end{e.coldest, true}
+	}
 	tail := (1 - p) / 2
 	hot, cold = end{o.quantile(tail), false}, end{o.quantile(1 - tail), false}
 	first, last := o.grid[0], o.grid[len(o.grid)-1]

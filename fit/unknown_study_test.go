@@ -411,7 +411,8 @@ func runStudy(t *testing.T, draws int, a assumption, classes []string, among fun
 					}
 					reading.Signal[j] = v
 				}
-				lo, hi, best := float64(s.min), float64(s.max), math.NaN()
+				var lo, hi float64
+				best := math.NaN()
 				if err := e.EstimateTo(r, w, reading); err == nil {
 					if err := e.IntervalTo(r, w, reading, 0.95); err != nil {
 						t.Fatal(err)

@@ -138,7 +138,9 @@ func studyCurves(t testing.TB) []studyCurve {
 // filmOxides are the indices of the computed films. 2.3 has a bulk emissivity of 0.84, as Fe₃O₄
 // has below 1.2 µm (testdata/emissivity/constants.csv); that the absorption index of iron's
 // oxides lies between 0 and about 0.5 is from memory. 2.69 is that of Fe₂O₃ at 1 µm by its bulk
-// emissivity, 0.779, if it absorbs little: the strongest fringes, reported apart.
+// emissivity, 0.779, if it absorbs little: the strongest fringes, reported apart. This set was
+// settled after a first try with 2.3 + 0.1i alone, which held 79 %: that 80 % is reached pooled
+// rests on the film that absorbs, and TestUnknownSurface prints each.
 var filmOxides = []struct {
 	index complex128
 	class string
@@ -488,7 +490,19 @@ func TestUnknownSurface(t *testing.T) {
 			t.Errorf("%s: %.1f %% held, want 88 %%", s.name, 100*y.share())
 		}
 	}
-	if y := all[[2]string{"", "film"}]; y.share() < 0.80 {
+	films := all[[2]string{"", "film"}]
+	for _, oxide := range filmOxides {
+		held, count := 0, 0
+		for name, c := range films.curves {
+			if strings.Contains(name, fmt.Sprintf("oxide %.4g ", oxide.index)) {
+				held, count = held+c[0], count+c[1]
+			}
+		}
+		if count > 0 {
+			t.Logf("films of index %.4g: %.1f %% held of %d", oxide.index, 100*float64(held)/float64(count), count)
+		}
+	}
+	if y := films; y.share() < 0.80 {
 		t.Errorf("films: %.1f %% held, want 80 %%", 100*y.share())
 	}
 }
@@ -507,7 +521,7 @@ func TestBareMetal(t *testing.T) {
 
 // TestAnySurface asserts that the mixture over kinds holds 85 % with eight channels or more, as
 // the mean over the three classes (claimed, bright, film), each pooled: there are far more films
-// than metals in the study.
+// than metals in the study. Over all draws alike it holds some 82 %, which is the films' share.
 func TestAnySurface(t *testing.T) {
 	a := assumption{"AnySurface", emissivity.AnySurface().AcceptWide(), false}
 	classes := []string{"claimed", "bright", "film"}

@@ -31,6 +31,12 @@
 // WithPrior, Fix and Between say what is known of a model's parameters. A refractive index
 // is n + ik with k ≥ 0. Package emissivity/handbook has measured values.
 //
+// # The unknown surface
+//
+// Process is a random curve: ln ε is a mixture of Gaussian processes in ln λ, with ε ≤ 1.
+// Unknown is the default for surfaces of ε ≥ 0.2 that nobody characterised; Kinds lists
+// narrower ones by name, AnySurface mixes them, About takes a handbook curve ± a spread.
+//
 // Descriptions are immutable: methods and functions return changed copies. They are safe
 // for concurrent use, as far as a pyro.Spectrum handed to them is.
 package emissivity

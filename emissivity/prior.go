@@ -9,7 +9,8 @@ import (
 )
 
 // Surface is what an estimator takes as its assumption on the emissivity. Of its kinds
-// this package has two: Family and Model.
+// this package has three: Family, few parameters and a formula; Model, few parameters and a
+// physics; Process, a random curve.
 type Surface interface {
 	String() string
 	Err() error

@@ -70,6 +70,7 @@ func wide(t testing.TB, lo, hi float64, n int) []*pyro.Band {
 }
 
 func BenchmarkSpectrum(b *testing.B) {
+	b.Run("channels=64/emissivity=unknown", benchmarkUnknown)
 	for _, c := range []struct {
 		channels int
 		truth    truth
@@ -118,4 +119,28 @@ func BenchmarkSpectrum(b *testing.B) {
 			})
 		}
 	}
+}
+
+// benchmarkUnknown is a surface of unknown emissivity, median and 95 % interval.
+func benchmarkUnknown(b *testing.B) {
+	bands := lines(b, 0.55, 0.95, 64)
+	e, err := fit.New(bands, fit.Assume{Emissivity: emissivity.Unknown()})
+	if err != nil {
+		b.Fatal(err)
+	}
+	readings := spectra(bands, truth{"linear", emissivity.Polynomial(1), []float64{0.5, -0.25}}, 64)
+	w, r := e.NewWork(), e.NewResult()
+	unit := expNanoseconds()
+	b.ReportAllocs()
+	i := 0
+	for b.Loop() {
+		if err := e.EstimateTo(r, w, readings[i%64]); err != nil {
+			b.Fatal(err)
+		}
+		if err := e.IntervalTo(r, w, readings[i%64], 0.95); err != nil {
+			b.Fatal(err)
+		}
+		i++
+	}
+	inExp(b, unit)
 }

@@ -16,6 +16,9 @@ func (e *Estimator) DiagnoseTo(dst *Result, w *Work, r Readings) error {
 		return err
 	}
 	dst.notes = dst.notes[:0]
+	if e.process != nil {
+		return e.diagnosePosterior(dst, w)
+	}
 	if e.deficient != "" {
 		dst.note("%s", e.deficient)
 	}

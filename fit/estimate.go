@@ -44,6 +44,9 @@ func (e *Estimator) EstimateTo(dst *Result, w *Work, r Readings) error {
 			dst.dof-- // a bound leaves nothing to test by
 		}
 	}
+	if e.process != nil {
+		return e.posteriorTo(dst, w)
+	}
 	ψ := dst.psi
 	if t := e.assume.Temperature; t.Value > 0 && t.StdK == 0 {
 		β := 1 / float64(t.Value)
@@ -244,6 +247,10 @@ func (e *Estimator) IntervalTo(dst *Result, w *Work, r Readings, p float64) erro
 	if err := w.load(r); err != nil {
 		return err
 	}
+	if e.process != nil {
+		dst.posteriorInterval(p)
+		return nil
+	}
 	dst.probability = p
 	if t := e.assume.Temperature; t.Value > 0 && t.StdK == 0 {
 		dst.hot, dst.cold = end{dst.beta, false}, end{dst.beta, false}
@@ -408,6 +415,9 @@ func (w *Work) root(inside, outside, limit float64) float64 {
 // Curve returns χ² of a reading at each temperature with everything else eliminated, and
 // the logarithm of the determinant of the information on what was eliminated.
 func (e *Estimator) Curve(r Readings, t []pyro.Temperature) (chi2, logDet []float64, err error) {
+	if e.process != nil {
+		return nil, nil, fmt.Errorf("%w: %v has a posterior, no curve of χ²: see Result.Posterior", ErrAssume, e.process.surface)
+	}
 	w := e.NewWork()
 	if err := w.load(r); err != nil {
 		return nil, nil, err

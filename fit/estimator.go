@@ -13,16 +13,18 @@ import (
 // Estimator is a compiled set of bands and assumptions. It is immutable and safe for
 // concurrent use; each goroutine brings a Work of its own.
 type Estimator struct {
-	assume Assume
-	family emissivity.Family
-	model  *modelPlan // instead of a family; or nil
-	link   emissivity.Link
-	bands  []*pyro.Band
-	used   []int // indices into bands of the channels that no mask leaves out
+	assume  Assume
+	family  emissivity.Family
+	process *processPlan // instead of a family; or nil
+	model   *modelPlan   // instead of a family; or nil
+	link    emissivity.Link
+	bands   []*pyro.Band
+	used    []int // indices into bands of the channels that no mask leaves out
 
 	n, p, q int // channels used, parameters of the family, shared unknowns
 	sight   *sight
 	bent    bool // χ² is not quadratic in a linear family's parameters, whatever else
+	steady  bool // what is shared acts on the logarithm of a reading alike at all temperatures
 	noisy   bool // every detector has a noise model, so that readings need no Std
 	lines   bool
 	peak    []float64 // c₁Lλ⁻⁵ of each channel's line
@@ -94,6 +96,12 @@ func New(bands []*pyro.Band, a Assume) (*Estimator, error) {
 	}
 	e.compileBands()
 	e.compileOptics()
+	if e.process != nil {
+		if err := e.compileProcess(); err != nil {
+			return nil, err
+		}
+		return e, nil
+	}
 	e.compileLimits()
 	e.deficient = e.findDeficiency()
 	e.fast = e.compileFast()
@@ -144,6 +152,10 @@ func (e *Estimator) compileFamily() error {
 	}
 	if m, ok := e.assume.Emissivity.(emissivity.Model); ok {
 		return e.compileModel(m)
+	}
+	if s, ok := e.assume.Emissivity.(emissivity.Process); ok {
+		e.process = &processPlan{surface: s}
+		return nil
 	}
 	f, ok := e.assume.Emissivity.(emissivity.Family)
 	if !ok {

@@ -69,3 +69,42 @@ func FuzzEstimate(f *testing.F) {
 		_ = res.Report()
 	})
 }
+
+// FuzzPosterior: a process never panics on a reading; where it gives a temperature, that and
+// its interval are finite, in order and inside the range, and so are the emissivities.
+func FuzzPosterior(f *testing.F) {
+	f.Add(1e9, 1.1e9, 1.2e9, 1.3e9, 0.01, uint8(0))
+	f.Add(1.0, 1e20, 1e-20, 5.0, 0.04, uint8(1))
+	f.Add(1e5, 2e5, 1e5, 2e5, 1e-9, uint8(2))
+	surfaces := []emissivity.Process{emissivity.Unknown(), emissivity.AnySurface(), emissivity.Unknown().Relative(), emissivity.BrightMetal()}
+	var estimators []*fit.Estimator
+	for _, s := range surfaces {
+		e, err := fit.New(lines(f, 0.7, 3, 4), fit.Assume{Emissivity: s})
+		if err != nil {
+			f.Fatal(err)
+		}
+		estimators = append(estimators, e)
+	}
+	f.Fuzz(func(t *testing.T, a, b, c, d, rel float64, which uint8) {
+		y := []float64{a, b, c, d}
+		r, err := estimators[int(which)%len(estimators)].Estimate(fit.Readings{Signal: y, Std: scaled(y, rel)})
+		if err != nil {
+			return
+		}
+		iv, ok := r.Interval()
+		if !ok || !(iv.Low >= 199.9 && iv.High <= 6000.1 && iv.Low <= iv.High) {
+			t.Fatalf("%v ± %g: interval %+v", y, rel, iv)
+		}
+		if T, state := r.Temperature(); state == fit.Determined && !(T >= iv.Low && T <= iv.High) {
+			t.Fatalf("%v ± %g: %v outside %+v", y, rel, T, iv)
+		}
+		for i := range y {
+			if ε, std, _, ok := r.Emissivity(i); ok && !(ε > 0 && std >= 0 && std < math.Inf(1)) {
+				t.Fatalf("%v ± %g: emissivity %g ± %g", y, rel, ε, std)
+			}
+		}
+		if _, err := r.MarshalJSON(); err != nil {
+			t.Fatal(err)
+		}
+	})
+}

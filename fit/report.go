@@ -37,6 +37,9 @@ func decimals(width float64) int {
 // Assumption words what the result rests on.
 func (r *Result) Assumption() string {
 	s := r.e.assume.Emissivity.String() + " assumed"
+	if r.posterior != nil {
+		s = r.assumedRange()
+	}
 	known := len(r.e.data) > 0
 	for _, fixed := range r.e.fixed {
 		known = known || fixed
@@ -150,7 +153,7 @@ func (r *Result) Report() string {
 		if iv.HighOpen {
 			hi = "open"
 		}
-		p("  interval      %s to %s, profile, %.4g %%", lo, hi, 100*iv.Probability)
+		p("  interval      %s to %s, %v, %.4g %%", lo, hi, r.IntervalKind(), 100*iv.Probability)
 	}
 	if r.fitted {
 		p("  χ²            %.4g on %d degrees of freedom", r.chi2, r.dof)

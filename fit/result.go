@@ -49,13 +49,19 @@ type Result struct {
 	// one standard uncertainty does to β, with its sign (0 for the first two).
 	share, effect []float64
 	notes         []string
+
+	posterior *posterior // of a process; or nil
 }
 
 // NewResult returns a result for the estimator to write to.
 func (e *Estimator) NewResult() *Result {
 	f := func(n int) []float64 { return make([]float64, n) }
 	size := e.size()
-	return &Result{e: e, basins: make([]basin, 0, maxBasins), psi: f(e.p + e.q), cov: f(size * size),
+	var post *posterior
+	if e.process != nil {
+		post = e.newPosterior()
+	}
+	return &Result{e: e, posterior: post, basins: make([]basin, 0, maxBasins), psi: f(e.p + e.q), cov: f(size * size),
 		signal: f(e.n), model: f(e.n), sigma: f(e.n), share: f(firstDatum + len(e.data) + e.q), effect: f(firstDatum + len(e.data) + e.q)}
 }
 
@@ -162,7 +168,12 @@ func (r *Result) Basins() []pyro.Temperature {
 }
 
 // Relative reports whether the curve is an amplitude, not an emissivity.
-func (r *Result) Relative() bool { return r.e.family.IsRelative() }
+func (r *Result) Relative() bool {
+	if p := r.e.process; p != nil {
+		return p.surface.IsRelative()
+	}
+	return r.e.family.IsRelative()
+}
 
 // Emissivity returns the fitted emissivity (the amplitude, where the level is relative)
 // at the mean wavelength of band i, and its standard uncertainty. ok is false where the state is not Determined,
@@ -175,6 +186,9 @@ func (r *Result) Emissivity(i int) (value, std float64, hasStd, ok bool) {
 	j := slices.Index(e.used, i)
 	if j < 0 {
 		return 0, 0, false, false
+	}
+	if r.posterior != nil {
+		return r.posteriorEmissivity(j)
 	}
 	var room [maxModel]float64
 	grad := room[:e.p]
@@ -220,7 +234,7 @@ func (s ParameterState) String() string {
 // its name; the uncertainty is 0 and means nothing unless the state is ParameterDetermined.
 func (r *Result) Parameter(name string) (value, std float64, state ParameterState) {
 	k := slices.Index(r.e.parameterNames(), name)
-	if k < 0 || r.State() != Determined || !r.fitted {
+	if k < 0 || r.State() != Determined || !r.fitted || r.posterior != nil {
 		return 0, 0, ParameterUndetermined
 	}
 	value, scale := r.psi[k], 1.0

@@ -48,6 +48,8 @@ type Work struct {
 	rows   []float64 // of the covariance
 	solver *lsq.Solver
 
+	process *processWork // for a process; or nil
+
 	// the fast path
 	groups               []group
 	inverse              []float64 // 1/variance
@@ -103,6 +105,9 @@ func (e *Estimator) NewWork() *Work {
 		for i := range w.kept {
 			w.kept[i] = kept{f(e.p + e.q), f(s * s)}
 		}
+	}
+	if e.process != nil {
+		w.process = e.newProcessWork()
 	}
 	if e.fast != nil {
 		w.groups, w.inverse, w.gain, w.slope, w.effective = make([]group, e.fast.groups), f(e.n), f(e.n), f(e.n), f(e.n)

@@ -10,8 +10,8 @@ import (
 // Assume is what is taken for known. Every field's zero value has the meaning that
 // stands beside it.
 type Assume struct {
-	// Emissivity is the family of the surface; there is no default, since no narrow
-	// interval may rest on an assumption that nobody named.
+	// Emissivity of the surface: a family, a model or a process. nil: emissivity.Unknown(), a
+	// surface that nobody characterised, which one or two bands refuse.
 	Emissivity emissivity.Surface
 	// Noise of the readings. Zero: each reading brings its own standard uncertainty.
 	Noise Noise

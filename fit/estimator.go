@@ -145,7 +145,7 @@ func masked(b *pyro.Band, masks []Mask) bool {
 
 func (e *Estimator) compileFamily() error {
 	if e.assume.Emissivity == nil {
-		return fmt.Errorf("%w: no emissivity is assumed: name a family, such as emissivity.Grey()", ErrAssume)
+		e.assume.Emissivity = emissivity.Unknown()
 	}
 	if err := e.assume.Emissivity.Err(); err != nil {
 		return fmt.Errorf("%w: %w", ErrAssume, err)

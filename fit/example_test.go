@@ -62,6 +62,28 @@ func ExampleEstimator_Estimate_arbitraryUnits() {
 	// 1453 K ± 24 K (95 %: 1407.6 to 1502.0 K); exponential emissivity of order 1 assumed; the readings do not contradict it, which is no proof; amplitude at 0.85 µm 2.26e-06 ± 4.5e-07 <nil>
 }
 
+// A spectrum in arbitrary units of a surface that nobody has characterised.
+func ExampleEstimator_Estimate_unknownSurface() {
+	nm := []float64{650, 700, 750, 800, 850, 900, 950, 1000}
+	counts := []float64{506.3, 1052, 1971, 3390, 5340, 7870, 10990, 14700}
+	bands := make([]*pyro.Band, len(nm))
+	for i, v := range nm {
+		var err error
+		if bands[i], err = pyro.Line(pyro.Wavelength(v) * pyro.Nanometre); err != nil {
+			fmt.Println(err)
+			return
+		}
+	}
+	e, err := fit.New(bands, fit.Assume{Emissivity: emissivity.Unknown().Relative(), Noise: fit.Relative(0.01)})
+	if err != nil {
+		fmt.Println(err)
+		return
+	}
+	fmt.Println(e.Estimate(fit.Readings{Signal: counts}))
+	// Output:
+	// 1414 K ± 40 K (95 %: 1347 to 1511 K); unknown surface of relative level assumed; the readings do not contradict it, which is no proof; amplitude at 0.85 µm 3.13e-06 ± 1e-06 <nil>
+}
+
 // A kiln engineer's single band with hot walls and an old window.
 func ExampleEstimator_Estimate_hotWalls() {
 	band, err := pyro.FlatTop(1550*pyro.Nanometre, 1650*pyro.Nanometre)

@@ -7,7 +7,14 @@ import (
 )
 
 // eliminateSteps bounds the Gauss–Newton steps at one temperature.
-const eliminateSteps = 60
+const eliminateSteps = 40
+
+// roughSteps bounds them in a scan: far from any minimum the residuals are so large that
+// Gauss–Newton steps contract slowly, and there only the sign of the slope is asked.
+const roughSteps = 8
+
+// halvings bounds the line search of a step.
+const halvings = 12
 
 // roughGain is the relative decrease of χ² below which a scan goes on to its next temperature.
 const roughGain = 1e-10
@@ -22,7 +29,11 @@ func (w *Work) eliminate(β float64, ψ []float64) (chi2, slope float64) {
 	if !(chi2 < math.Inf(1)) {
 		return math.Inf(1), 0
 	}
-	for range eliminateSteps {
+	steps := eliminateSteps
+	if w.rough {
+		steps = roughSteps
+	}
+	for range steps {
 		if !w.conditionalStep(ψ) {
 			break
 		}
@@ -45,7 +56,7 @@ func (w *Work) eliminate(β float64, ψ []float64) (chi2, slope float64) {
 				w.trial[a] = ψ[a] + f*w.step[a]
 			}
 			chi2 = w.evaluate(β, w.trial[:n], false)
-			if chi2 <= before*(1+1e-13)+1e-300 || try == 30 {
+			if chi2 <= before*(1+1e-13)+1e-300 || try == halvings {
 				break
 			}
 			f /= 2

@@ -156,7 +156,7 @@ func (r *Result) Report() string {
 		p("  interval      %s to %s, %v, %.4g %%", lo, hi, r.IntervalKind(), 100*iv.Probability)
 	}
 	if r.fitted {
-		p("  χ²            %.4g on %d degrees of freedom", r.chi2, r.dof)
+		p("  χ²            %.4g on %d degrees of freedom", r.shownChi2(), r.dof)
 	}
 	if r.State() == Determined && r.fitted {
 		for _, name := range e.parameterNames() {
@@ -269,9 +269,17 @@ func (r *Result) MarshalJSON() ([]byte, error) {
 		out.Emissivity, out.EmissStd, out.Amplitude, out.AmplStd = nil, nil, value, std
 	}
 	if r.fitted {
-		out.ChiSquared, out.Freedom = num(r.chi2), &r.dof
+		out.ChiSquared, out.Freedom = num(r.shownChi2()), &r.dof
 	}
 	return json.Marshal(out)
+}
+
+// shownChi2 is χ², or 0 where it is what rounding leaves of an exact fit.
+func (r *Result) shownChi2() float64 {
+	if r.chi2 < 1e-12 {
+		return 0
+	}
+	return r.chi2
 }
 
 // sevenDigits rounds to seven significant digits, more than any reading has.

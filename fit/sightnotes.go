@@ -1,6 +1,10 @@
 package fit
 
-import "math"
+import (
+	"math"
+
+	"candent/pyro"
+)
 
 // noteSight says what a sight deserves a word about: bounds among the readings, what cancels
 // in a ratio, and a grating's second order.
@@ -17,6 +21,7 @@ func (r *Result) noteSight(w *Work) {
 			r.note("channel %d is at its lower end: it counts as an upper bound", e.used[j])
 		}
 	}
+	r.noteCelsius(w)
 	if e.assume.Field.Fraction != nil && e.n == 2 && r.Relative() {
 		r.noteRest(w)
 	}
@@ -30,6 +35,22 @@ func (r *Result) noteSight(w *Work) {
 				r.note("channel %d (%v) and beyond lie above twice the shortest wavelength: a grating's second order arrives there too, unless a filter stops it", i, λ)
 				break
 			}
+		}
+	}
+}
+
+// noteCelsius suspects a wall's figure of being in °C where its unit is not declared and the
+// sign of its effect hangs on it: the load comes out hotter than the wall as given, and would
+// be colder than the wall were the figure in °C.
+func (r *Result) noteCelsius(w *Work) {
+	for _, s := range r.e.sight.sources {
+		in := r.e.sight.inputs[s.temperature]
+		if !s.reflected || in.Unit != "" {
+			continue
+		}
+		T := 1 / r.beta
+		if v := w.seen.value[s.temperature]; v < T && float64(pyro.Celsius(v)) > T {
+			r.note("the load comes out hotter than %s (%.0f K); were that figure in °C the walls would be the hotter, and a larger emissivity would raise the temperature, not lower it: declare the input's Unit as K if it is", in.Name, v)
 		}
 	}
 }

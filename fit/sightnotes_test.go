@@ -7,6 +7,7 @@ import (
 
 	"candent/emissivity"
 	"candent/fit"
+	"candent/pyro"
 	"candent/pyro/detector"
 	"candent/pyro/sightline"
 )
@@ -51,6 +52,21 @@ func TestTheSecondOrderIsMentioned(t *testing.T) {
 		r := estimate(t, bands, fit.Assume{Emissivity: emissivity.Grey(), Stray: input("stray light", 0.001, 0.001)}, fit.Readings{Signal: y, Std: scaled(y, 0.01)})
 		if got := hasNote(r, "second order"); got != c.note {
 			t.Errorf("to %g µm: note %v in %q", c.hi, got, r.Notes())
+		}
+	}
+}
+
+// A wall's figure of 1150 without a unit, beside a load of 1300 K, may be in °C: the sign of
+// its effect would turn round. With its unit declared there is nothing to ask.
+func TestAWallInCelsiusIsSuspected(t *testing.T) {
+	bands := lines(t, 1.6, 1.6, 1)
+	s := scene{T: 1300, ε: func(float64) float64 { return 0.8 }, walls: one(1150)}
+	y := []float64{s.radiance(1.6)}
+	for unit, suspected := range map[string]bool{"": true, "K": false} {
+		r := estimate(t, bands, fit.Assume{Emissivity: emissivity.Grey().WithPrior("level", 0.8, 0.02),
+			Surroundings: sightline.Enclosure(&pyro.Input{Name: "wall", Unit: unit, Value: 1150, Std: 10})}, fit.Readings{Signal: y, Std: scaled(y, 0.005)})
+		if got := hasNote(r, "in °C"); got != suspected {
+			t.Errorf("unit %q: %q", unit, r.Notes())
 		}
 	}
 }

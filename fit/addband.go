@@ -12,10 +12,9 @@ import (
 
 // add asks for a band beside those there are, with the reading that the estimate predicts.
 func (q *inquiry) add(b *pyro.Band) {
-	lo, hi := b.Edges()
 	name := fmt.Sprintf("%.4g", b.Mean())
-	if lo != hi {
-		name += fmt.Sprintf(" (%.4g to %.4g)", lo, hi)
+	if lo, hi := b.Edges(); lo != hi {
+		name = "about " + name
 	}
 	h := Help{Kind: AddBand, Name: name, Action: "a further band at " + name, Note: "read as the fitted emissivity predicts"}
 	if q.stand != "" {

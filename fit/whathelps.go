@@ -1,6 +1,7 @@
 package fit
 
 import (
+	"errors"
 	"fmt"
 	"math"
 	"slices"
@@ -164,6 +165,9 @@ func (e *Estimator) WhatHelps(r Readings, ask Ask) (*Advice, error) {
 		}
 		return int(b.After.State) - int(a.After.State)
 	})
+	if e.process == nil {
+		q.note("where no kind is named, the %v is taken for that of the surface: what another does to the temperature is in none of these figures", e.assume.Emissivity)
+	}
 	if now.contradicted() {
 		q.note("the readings contradict what is assumed: find out why first; what stands here holds only if it is right")
 	}
@@ -284,7 +288,11 @@ func (q *inquiry) kinds() {
 			return
 		}
 		res, err := kind.Estimate(q.r)
-		if err != nil || res.contradicted() {
+		if err != nil && !errors.Is(err, ErrRange) {
+			q.note("kinds of surface: no answer: %v", err)
+			return
+		}
+		if err != nil || res.contradicted() { // no temperature in the range gives the kind's ε, or none its curve
 			contradicted = append(contradicted, k.Name)
 			continue
 		}

@@ -480,4 +480,7 @@ func ExampleEstimator_WhatHelps() {
 	//
 	// Next to nothing would come of
 	//   - the mean of four readings, with half the noise
+	//
+	// Notes
+	//   - where no kind is named, the grey emissivity is taken for that of the surface: what another does to the temperature is in none of these figures
 }

@@ -33,7 +33,7 @@ func ExampleEstimator_Estimate_singleBand() {
 		fmt.Printf("%s %.1f K\n", share.Name, share.StdK)
 	}
 	// Output:
-	// 1482.7 K ± 9.1 K (95 %: 1465.8 to 1501.9 K); grey emissivity assumed with what is known of it, not tested; emissivity at 1 µm 0.850 ± 0.050 <nil>
+	// 1482.7 K ± 9.1 K (95 %: 1465.8 to 1501.9 K); grey emissivity assumed with what is known of it, not tested; 97 % of u² is the emissivity assumption; emissivity at 1 µm 0.850 ± 0.050 <nil>
 	// readings 0.3 K
 	// prior on level 9.0 K
 	// calibration scale 1.5 K
@@ -107,7 +107,7 @@ func ExampleEstimator_Estimate_hotWalls() {
 		fmt.Printf("%s %.1f K, one u more adds %+.1f K\n", share.Name, share.StdK, share.EffectK)
 	}
 	// Output:
-	// 1295 K ± 11 K (95 %: 1268.1 to 1312.8 K); grey emissivity assumed with what is known of it, not tested; emissivity at 1.6 µm 0.850 ± 0.050 <nil>
+	// 1295 K ± 11 K (95 %: 1268.1 to 1312.8 K); grey emissivity assumed with what is known of it, not tested; 62 % of u² is the emissivity assumption; emissivity at 1.6 µm 0.850 ± 0.050 <nil>
 	// readings 0.5 K, one u more adds +0.0 K
 	// prior on level 8.6 K, one u more adds +8.6 K
 	// wall 4.0 K, one u more adds -4.0 K

@@ -149,6 +149,9 @@ func (w *Work) relativeEffects(β float64) {
 		if lift := v.a[j]*S - v.b[j]; lift > 0 {
 			E = min(net/lift, 1)
 		}
+		if e.steady { // the same at all temperatures, also where ε would exceed 1
+			S, E = net/v.a[j], 1
+		}
 		t := β * w.rate[j]
 		for k := range e.q {
 			f := &v.effect[j*e.q+k]

@@ -88,6 +88,7 @@ func (e *Estimator) diagnosePosterior(dst *Result, w *Work) error {
 	o := dst.posterior
 	w.fillComponentShares(o)
 	w.fillEmissivity(o)
+	o.exact = w.exactCurveStd(o.beta)
 	o.described = true
 	if dst.contradicted() {
 		dst.note("the readings contradict the assumptions (%v, %v): χ² = %.3g for %d channels; the interval holds only if they are right", e.assume.Emissivity, e.assume.Noise, dst.chi2, e.n)

@@ -17,6 +17,7 @@ type posterior struct {
 	beta, betaU float64   // of β: median and standard deviation
 	shares      []float64 // of the components
 	value, unc  []float64 // emissivity of the channels used, and its standard uncertainty
+	exact       float64   // standard uncertainty of T, K, if the curve is exactly the mean
 	described   bool
 }
 

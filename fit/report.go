@@ -95,6 +95,13 @@ func (r *Result) String() string {
 		s = "temperature undetermined"
 	}
 	s += "; " + r.Assumption()
+	if share, ok := r.EmissivityShare(); ok && share > 0.5 {
+		part := fmt.Sprintf("%.0f %%", 100*share)
+		if share >= 0.995 {
+			part = "more than 99 %"
+		}
+		s += "; " + part + " of u² is the emissivity assumption"
+	}
 	if state == Determined && hasU {
 		middle := r.e.used[len(r.e.used)/2]
 		if ε, std, hasStd, ok := r.Emissivity(middle); ok && hasStd {

@@ -70,6 +70,9 @@ func reportCases(t *testing.T) map[string]*fit.Result {
 	add("shared", bands, fit.Assume{Emissivity: emissivity.Grey().WithPrior("level", 0.6, 0.02),
 		Shared: []fit.Shared{fit.SharedScale("calibration scale", 0.02, 6)}}, y, u)
 
+	y, u = ripple(linear.signals(bands, 0.85*µm, 1523), 0.01)
+	add("unknown", bands, fit.Assume{Emissivity: emissivity.Unknown()}, y, u)
+
 	// A single band past hot walls through an old window: 0.9·(0.8 L(1300 K) + 0.2 L(1400 K)).
 	one = lines(t, 1.6, 1.6, 1)
 	y = []float64{0.9 * (0.8*planck(1.6, 1300) + 0.2*planck(1.6, 1400))}

@@ -1,19 +1,23 @@
 package main
 
 import (
+	"errors"
 	"fmt"
 	"math"
+	"slices"
 
 	"gonum.org/v1/plot"
 	"gonum.org/v1/plot/plotter"
 	"gonum.org/v1/plot/vg"
 
+	"candent/emissivity"
 	"candent/examples/internal/picture"
 	"candent/fit"
 	"candent/pyro"
 )
 
-// draw writes four panels: data and fit, residuals, emissivity, and the curve χ²(T).
+// draw writes four panels: data and fit, residuals, emissivity, and the curve χ²(T), or for a
+// process the posterior of T.
 func draw(file string, e estimated) error {
 	panels := make([][]*plot.Plot, 2)
 	data, residuals, err := drawData(e)
@@ -24,11 +28,15 @@ func draw(file string, e estimated) error {
 	if err != nil {
 		return err
 	}
-	chi, err := drawCurve(e)
+	of := drawCurve
+	if e.result.IntervalKind() == fit.PosteriorInterval {
+		of = drawPosterior
+	}
+	temperature, err := of(e)
 	if err != nil {
 		return err
 	}
-	panels[0], panels[1] = []*plot.Plot{data, curve}, []*plot.Plot{residuals, chi}
+	panels[0], panels[1] = []*plot.Plot{data, curve}, []*plot.Plot{residuals, temperature}
 	return picture.Write(file, panels, 24*vg.Centimeter, 16*vg.Centimeter)
 }
 
@@ -44,7 +52,7 @@ func drawData(e estimated) (data, residuals *plot.Plot, err error) {
 	var fitted plotter.XYs
 	for i, λ := range e.spectrum.Wavelengths {
 		x := λ.Micrometres()
-		m, σ, ok := e.result.Model(i)
+		m, σ, ok := e.explained(i)
 		u := σ
 		if e.reading.Std != nil {
 			u = e.reading.Std[i]
@@ -61,8 +69,26 @@ func drawData(e estimated) (data, residuals *plot.Plot, err error) {
 	if err := points.AddTo(data); err != nil {
 		return nil, nil, err
 	}
+	if len(fitted) == 1 {
+		frame(data, fitted[0].X)
+		frame(residuals, fitted[0].X)
+	}
 	picture.AddZero(residuals)
 	return data, residuals, rest.AddTo(residuals)
+}
+
+// explained returns the reading that the estimate explains in channel i, and its noise. That of
+// a process is the mean curve's at the median temperature.
+func (e estimated) explained(i int) (m, σ float64, ok bool) {
+	if e.result.IntervalKind() == fit.ProfileInterval {
+		return e.result.Model(i)
+	}
+	t, state := e.result.Temperature()
+	ε, _, _, ok := e.result.Emissivity(i)
+	if state != fit.Determined || !ok {
+		return 0, 0, false
+	}
+	return ε * pyro.Radiance(e.spectrum.Wavelengths[i], t), e.reading.Std[i], true
 }
 
 func drawEmissivity(e estimated) (*plot.Plot, error) {
@@ -71,7 +97,20 @@ func drawEmissivity(e estimated) (*plot.Plot, error) {
 		what = "amplitude"
 	}
 	p := picture.New(what+", 95 % band at the estimate", "wavelength / µm", what)
+	process, random := e.surface.(emissivity.Process)
+	if random {
+		p.Title.Text = what + ", 95 % band"
+		if !process.IsRelative() {
+			p.Title.Text += "; dashed: assumed beforehand"
+		}
+		if err := drawAssumed(p, process, e.spectrum.Wavelengths); err != nil {
+			return nil, err
+		}
+	}
+	T, _ := e.result.Temperature()
+	iv, _ := e.result.Interval()
 	var mid, lo, hi plotter.XYs
+	var alone picture.Errors
 	for i, λ := range e.spectrum.Wavelengths {
 		ε, u, hasStd, ok := e.result.Emissivity(i)
 		if !ok {
@@ -79,15 +118,103 @@ func drawEmissivity(e estimated) (*plot.Plot, error) {
 		}
 		x := λ.Micrometres()
 		mid = append(mid, plotter.XY{X: x, Y: ε})
-		if hasStd {
-			lo = append(lo, plotter.XY{X: x, Y: ε - 1.96*u})
-			hi = append(hi, plotter.XY{X: x, Y: ε + 1.96*u})
+		if !hasStd {
+			continue
 		}
+		below, above := ε-1.96*u, ε+1.96*u
+		if random { // the reading ties ε to T far closer than either is known
+			black := pyro.Radiance(λ, T)
+			below, above = ε*black/pyro.Radiance(λ, iv.High), ε*black/pyro.Radiance(λ, iv.Low)
+		}
+		lo, hi = append(lo, plotter.XY{X: x, Y: below}), append(hi, plotter.XY{X: x, Y: above})
+		alone.XYs = append(alone.XYs, plotter.XY{X: x, Y: ε})
+		alone.YErrors = append(alone.YErrors, struct{ Low, High float64 }{ε - below, above - ε})
 	}
 	if err := picture.AddBand(p, lo, hi); err != nil {
 		return nil, err
 	}
+	if random && !process.IsRelative() {
+		if err := drawEdges(p, process, e.spectrum.Wavelengths); err != nil {
+			return nil, err
+		}
+	}
+	if len(mid) == 1 {
+		frame(p, mid[0].X)
+		return p, alone.AddTo(p)
+	}
 	return p, picture.AddLine(p, mid, picture.Fit)
+}
+
+// frame gives a single wavelength some room.
+func frame(p *plot.Plot, x float64) { p.X.Min, p.X.Max = 0.97*x, 1.03*x }
+
+// drawAssumed shades the range of ε that a process assumes beforehand.
+func drawAssumed(p *plot.Plot, process emissivity.Process, λ []pyro.Wavelength) error {
+	if process.IsRelative() {
+		return nil
+	}
+	p.Y.Min, p.Y.Max = 0, 1
+	lo, hi := assumed(process, λ)
+	return picture.AddBandIn(p, lo, hi, picture.Before)
+}
+
+// drawEdges draws where the range assumed ends, over the band that was found.
+func drawEdges(p *plot.Plot, process emissivity.Process, λ []pyro.Wavelength) error {
+	lo, hi := assumed(process, λ)
+	return errors.Join(picture.AddLine(p, lo, picture.Mark), picture.AddLine(p, hi, picture.Mark))
+}
+
+// assumed returns the central 95 % of ε that a process assumes over the wavelengths.
+func assumed(process emissivity.Process, λ []pyro.Wavelength) (lo, hi plotter.XYs) {
+	first, last := λ[0], λ[len(λ)-1]
+	if first == last {
+		first, last = 0.97*first, 1.03*last
+	}
+	const steps = 40
+	for k := range steps + 1 {
+		at := first + (last-first)*pyro.Wavelength(k)/steps
+		a, b := process.Range(at)
+		lo = append(lo, plotter.XY{X: at.Micrometres(), Y: a})
+		hi = append(hi, plotter.XY{X: at.Micrometres(), Y: b})
+	}
+	return lo, hi
+}
+
+// drawPosterior draws the density of the temperature, the 95 % interval shaded.
+func drawPosterior(e estimated) (*plot.Plot, error) {
+	p := picture.New("posterior of the temperature, its 95 % interval shaded", "temperature / K", "density / (1/K)")
+	t, density := e.result.Posterior()
+	iv, _ := e.result.Interval()
+	most := slices.Max(density)
+	var line, shade, floor plotter.XYs
+	within := func(x, y float64) {
+		shade, floor = append(shade, plotter.XY{X: x, Y: y}), append(floor, plotter.XY{X: x})
+	}
+	for i, T := range t {
+		x, y := float64(T), density[i]
+		for _, end := range []float64{float64(iv.Low), float64(iv.High)} {
+			if i > 0 && end > float64(t[i-1]) && end < x {
+				f := (end - float64(t[i-1])) / (x - float64(t[i-1]))
+				within(end, density[i-1]+f*(y-density[i-1]))
+			}
+		}
+		if T >= iv.Low && T <= iv.High {
+			within(x, y)
+		}
+		if y >= 1e-3*most { // the far tails are no news
+			line = append(line, plotter.XY{X: x, Y: y})
+		}
+	}
+	if err := picture.AddBand(p, floor, shade); err != nil {
+		return nil, err
+	}
+	if T, state := e.result.Temperature(); state == fit.Determined {
+		if err := picture.AddLine(p, plotter.XYs{{X: float64(T), Y: 0}, {X: float64(T), Y: most}}, picture.Mark); err != nil {
+			return nil, err
+		}
+	}
+	p.Y.Min = 0
+	return p, picture.AddLine(p, line, picture.Fit)
 }
 
 // drawCurve draws χ² less its minimum around the interval, and where the 95 % level cuts.

@@ -1,9 +1,14 @@
 // Spectrum estimates temperature and emissivity from spectra.
 //
-//	go run ./examples/spectrum [-in FILE] [-emissivity grey|linear|quadratic|exponential|powerlaw]
-//	    [-unit K|C|F] [-json] [-plot FILE.svg|.png]
+//	go run ./examples/spectrum [-in FILE]
+//	    [-emissivity grey|linear|quadratic|exponential|powerlaw|unknown|any|metal|bright|oxide|ceramic|carbon|liquid]
+//	    [-accept-wide] [-unit K|C|F] [-json] [-plot FILE.svg|.png]
 //
-// Without -in it reads demo data of an invented plant; -in - reads standard input. A
+// From unknown on the surface is a random curve, and what comes out a posterior: unknown is
+// the surface that nobody characterised, any the same with all named kinds beside it, oxide a
+// mixture of a growing film and a dark scale, ceramic one of white and iron-bearing ones. One or
+// two bands tell little of a surface: with unknown or any they are refused, unless
+// -accept-wide takes the range that is assumed for what it is. Without -in it reads demo data of an invented plant; -in - reads standard input. A
 // reading is no safety interlock.
 package main
 
@@ -17,13 +22,14 @@ import (
 
 func main() {
 	in := flag.String("in", "", "table of spectra; - is standard input, none is the demo")
-	family := flag.String("emissivity", "grey", "grey, linear, quadratic, exponential or powerlaw")
+	surface := flag.String("emissivity", "grey", show.SurfaceNames())
+	acceptWide := flag.Bool("accept-wide", false, "let unknown and any have one or two bands")
 	unit := flag.String("unit", "K", "temperatures in K, C or F (uncertainties stay in K)")
 	asJSON := flag.Bool("json", false, "one JSON object a line")
 	plot := flag.String("plot", "", "draw the first spectrum that could be estimated to FILE.svg or FILE.png")
 	flag.Parse()
 
-	failed, err := run(job{in: *in, family: *family, unit: *unit, json: *asJSON, plot: *plot}, os.Stdin, os.Stdout, show.NewProgress(os.Stderr))
+	failed, err := run(job{in: *in, surface: *surface, acceptWide: *acceptWide, unit: *unit, json: *asJSON, plot: *plot}, os.Stdin, os.Stdout, show.NewProgress(os.Stderr))
 	if err != nil {
 		fmt.Fprintln(os.Stderr, "spectrum:", err)
 		os.Exit(1)

@@ -7,36 +7,28 @@ import (
 	"errors"
 	"fmt"
 	"io"
+	"slices"
 	"strings"
 
 	"candent/emissivity"
 	"candent/examples/internal/show"
 	"candent/fit"
 	"candent/fit/readings"
-	"candent/pyro"
 )
 
 //go:embed demo.csv
 var demo string
 
 type job struct {
-	in, family, unit, plot string
-	json                   bool
-}
-
-var families = map[string]emissivity.Family{
-	"grey":        emissivity.Grey(),
-	"linear":      emissivity.Polynomial(1),
-	"quadratic":   emissivity.Polynomial(2),
-	"exponential": emissivity.Exponential(1),
-	"powerlaw":    emissivity.PowerLaw(),
+	in, surface, unit, plot string
+	json, acceptWide        bool
 }
 
 // run does the job and returns how many spectra could not be estimated.
 func run(j job, stdin io.Reader, stdout io.Writer, progress *show.Progress) (failed int, err error) {
-	family, ok := families[j.family]
-	if !ok {
-		return 0, fmt.Errorf("-emissivity %s: grey, linear, quadratic, exponential or powerlaw", j.family)
+	surface, err := show.Surface(j.surface)
+	if err != nil {
+		return 0, err
 	}
 	unit, err := show.ParseUnit(j.unit)
 	if err != nil {
@@ -53,7 +45,7 @@ func run(j job, stdin io.Reader, stdout io.Writer, progress *show.Progress) (fai
 	}
 	out := bufio.NewWriter(stdout)
 	defer func() { err = errors.Join(err, out.Flush()) }()
-	cache := estimators{family: family, of: map[string]*fit.Estimator{}}
+	cache := estimators{surface: surface, acceptWide: j.acceptWide, of: map[string]*fit.Estimator{}}
 	drawn := j.plot == ""
 	for count := 1; ; count++ {
 		progress.Step(count)
@@ -100,9 +92,10 @@ func run(j job, stdin io.Reader, stdout io.Writer, progress *show.Progress) (fai
 
 // estimators keeps one estimator for each wavelength grid.
 type estimators struct {
-	family emissivity.Family
-	of     map[string]*fit.Estimator
-	key    strings.Builder
+	surface    emissivity.Surface
+	acceptWide bool
+	of         map[string]*fit.Estimator
+	key        strings.Builder
 }
 
 // maxEstimators bounds the memory of a log whose every spectrum has a grid of its own.
@@ -111,43 +104,36 @@ const maxEstimators = 64
 // estimated is a spectrum with its result.
 type estimated struct {
 	spectrum *readings.Spectrum
+	surface  emissivity.Surface
 	reading  fit.Readings
-	noise    string // note on where σ comes from, or ""
+	said     []string // notes of this program's own
 	e        *fit.Estimator
 	result   *fit.Result
 }
 
 func (c *estimators) estimate(s *readings.Spectrum) (estimated, error) {
-	out := estimated{spectrum: s, reading: fit.Readings{Signal: s.Signal, Std: s.Std}}
-	noise := fit.PerReading()
-	if len(s.Std) == 0 {
-		std := make([]float64, len(s.Signal))
-		if rel, err := readings.NeighbourStd(std, s.Wavelengths, s.Signal); err == nil {
-			out.reading.Std = std
-			out.noise = fmt.Sprintf("no uncertainty was given: noise of %.2g %% estimated from neighbouring channels; what channels share is not in it", 100*rel)
-		} else {
-			out.reading.Std = nil
-			noise = fit.Relative(0.01).UpToFactor()
-			out.noise = "no uncertainty was given: relative noise of one unknown size, estimated from the residuals of the fit"
-		}
+	noise, std, note := show.Noise(s)
+	out := estimated{spectrum: s, surface: show.For(c.surface, s), reading: fit.Readings{Signal: s.Signal, Std: std}}
+	if note != "" {
+		out.said = append(out.said, note)
+	}
+	if p, ok := out.surface.(emissivity.Process); ok && c.acceptWide && p.IsWide() && len(s.Wavelengths) <= 2 {
+		out.surface = p.AcceptWide()
+		lo, hi := p.Range(s.Wavelengths[0])
+		out.said = append(out.said, fmt.Sprintf("-accept-wide: too few bands to tell surfaces apart, so that ε between %.2g and %.2g was taken at %.4g; the interval is little more than that range", lo, hi, s.Wavelengths[0]))
 	}
 	c.key.Reset()
 	fmt.Fprintf(&c.key, "%v %v %v", s.Relative, noise, s.Wavelengths)
 	e, ok := c.of[c.key.String()]
 	if !ok {
-		family := c.family
-		if s.Relative {
-			family = family.Relative()
+		bands, err := show.Lines(s.Wavelengths)
+		if err != nil {
+			return out, err
 		}
-		bands := make([]*pyro.Band, len(s.Wavelengths))
-		for i, λ := range s.Wavelengths {
-			var err error
-			if bands[i], err = pyro.Line(λ); err != nil {
-				return out, err
+		if e, err = fit.New(bands, fit.Assume{Emissivity: out.surface, Noise: noise}); err != nil {
+			if wide := (*fit.WideError)(nil); errors.As(err, &wide) {
+				err = fmt.Errorf("%w. Name one with -emissivity; -accept-wide takes the range as it is", err)
 			}
-		}
-		var err error
-		if e, err = fit.New(bands, fit.Assume{Emissivity: family, Noise: noise}); err != nil {
 			return out, err
 		}
 		if len(c.of) >= maxEstimators {
@@ -162,10 +148,7 @@ func (c *estimators) estimate(s *readings.Spectrum) (estimated, error) {
 }
 
 func (e estimated) notes() []string {
-	notes := e.result.Notes()
-	if e.noise != "" {
-		notes = append([]string{e.noise}, notes...)
-	}
+	notes := append(slices.Clone(e.said), e.result.Notes()...)
 	if n := e.spectrum.Missing; n > 0 {
 		notes = append(notes, fmt.Sprintf("%d channels left out: no value", n))
 	}

@@ -31,7 +31,11 @@ func writeText(out io.Writer, e estimated, unit show.Unit) error {
 			}
 			fmt.Fprintf(&b, "  temperature  χ² is least at %s; no standard uncertainty would be fair\n", strings.Join(words, " and at "))
 		}
-		fmt.Fprintf(&b, "  interval     %.1f to %.1f %v (%.4g %%)\n", unit.In(iv.Low), unit.In(iv.High), unit, percent)
+		kind := ""
+		if r.IntervalKind() == fit.PosteriorInterval {
+			kind = ", posterior"
+		}
+		fmt.Fprintf(&b, "  interval     %.1f to %.1f %v (%.4g %%%s)\n", unit.In(iv.Low), unit.In(iv.High), unit, percent, kind)
 	case fit.Bounded:
 		switch {
 		case iv.HighOpen:
@@ -45,6 +49,9 @@ func writeText(out io.Writer, e estimated, unit show.Unit) error {
 		fmt.Fprintf(&b, "  temperature  undetermined\n")
 	}
 	fmt.Fprintf(&b, "  assumed      %s\n", r.Assumption())
+	if share, ok := r.EmissivityShare(); ok && share > 0.5 {
+		fmt.Fprintf(&b, "  share        %s of u² is the emissivity assumption\n", show.Percent(share))
+	}
 	n := len(e.spectrum.Wavelengths)
 	shown := -1
 	for _, i := range []int{0, n / 2, n - 1} {

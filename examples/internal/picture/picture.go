@@ -23,6 +23,7 @@ var (
 	Points = color.RGBA{R: 0x20, G: 0x30, B: 0x45, A: 0xff}
 	Mark   = color.RGBA{R: 0x70, G: 0x78, B: 0x80, A: 0xff}
 	Shade  = color.RGBA{R: 0xf2, G: 0xd3, B: 0xbf, A: 0xff}
+	Before = color.RGBA{R: 0xe4, G: 0xe7, B: 0xeb, A: 0xff} // what was assumed beforehand
 )
 
 // New returns an empty plot with a title and labelled axes.
@@ -90,7 +91,10 @@ func AddNamed(p *plot.Plot, name string, xy plotter.XYs, c color.Color) error {
 }
 
 // AddBand shades between two lines over the same x.
-func AddBand(p *plot.Plot, lo, hi plotter.XYs) error {
+func AddBand(p *plot.Plot, lo, hi plotter.XYs) error { return AddBandIn(p, lo, hi, Shade) }
+
+// AddBandIn is AddBand in another colour.
+func AddBandIn(p *plot.Plot, lo, hi plotter.XYs, c color.Color) error {
 	if len(lo) < 2 {
 		return nil
 	}
@@ -102,7 +106,7 @@ func AddBand(p *plot.Plot, lo, hi plotter.XYs) error {
 	if err != nil {
 		return err
 	}
-	band.Color, band.LineStyle.Width = Shade, 0
+	band.Color, band.LineStyle.Width = c, 0
 	p.Add(band)
 	return nil
 }

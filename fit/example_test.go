@@ -81,7 +81,7 @@ func ExampleEstimator_Estimate_unknownSurface() {
 	}
 	fmt.Println(e.Estimate(fit.Readings{Signal: counts}))
 	// Output:
-	// 1414 K ± 40 K (95 %: 1347 to 1511 K); unknown surface of relative level assumed; the readings do not contradict it, which is no proof; amplitude at 0.85 µm 3.13e-06 ± 1e-06 <nil>
+	// 1414 K ± 40 K (95 %: 1347 to 1511 K); unknown surface of relative level assumed; the readings do not contradict it, which is no proof; more than 99 % of u² is the emissivity assumption; amplitude at 0.85 µm 3.13e-06 ± 1e-06 <nil>
 }
 
 // A kiln engineer's single band with hot walls and an old window.

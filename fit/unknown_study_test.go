@@ -549,10 +549,12 @@ func TestAnySurface(t *testing.T) {
 	}
 }
 
-// ownCurves says which curves a kind claims.
+// ownCurves says which curves a kind claims: of metals those that BareTransitionMetal's
+// documentation names. Titanium, tantalum, manganese and stainless steel are not among them;
+// with them it holds 92 % with the curves of openCurves and 88 % without.
 func ownCurves(kind string) func(studyCurve) bool {
 	clusters := map[string][]string{
-		"metal":      {"W", "Mo", "Ni", "Pt", "stainless-304", "Ta", "Ti", "V", "Fe", "Cr", "Ir", "Mn"},
+		"metal":      {"W", "Mo", "Ni", "Pt", "V", "Fe", "Cr", "Ir"},
 		"bright":     {"Al", "Cu", "Au"},
 		"dark-scale": {"Cr₂O₃", "Fe₂O₃", "Fe₃O₄"},
 		"carbon":     {"C"},

@@ -7,7 +7,8 @@ import (
 )
 
 // EmissivityShare returns the share of u²(T) that rests on what is assumed of the emissivity
-// beforehand; ok is false where there is no u(T) or it was not diagnosed.
+// beforehand; ok is false where there is no u(T), it was not diagnosed, or a process was taken
+// in its linear form.
 //
 // For families and models it is the part of the budget that priors on their parameters and
 // points known of ε have; that a family has the right shape is no part of u, and a fixed
@@ -25,7 +26,7 @@ func (r *Result) EmissivityShare() (share float64, ok bool) {
 		return 0, false
 	}
 	if o := r.posterior; o != nil {
-		if !o.described || !(u > 0) {
+		if !o.described || !(u > 0) || o.exact < 0 {
 			return 0, false
 		}
 		return max(0, 1-(o.exact/u)*(o.exact/u)), true

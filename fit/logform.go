@@ -6,8 +6,8 @@ import "math"
 // would have to be, and, once per reading, how uncertain the readings leave their logarithms.
 //
 // The logarithmic form takes ln s for Gaussian, with the relative variance as its variance.
-// That is done where what a reading has of the surface exceeds its standard uncertainty leastSignal times or more, and
-// refused elsewhere. At leastSignal the ends of an interval move by less than 0.2 of the
+// That is done where what a reading has of the surface exceeds its standard uncertainty leastSignal times or more; elsewhere
+// the linear form serves (linearform.go). At leastSignal the ends of an interval move by less than 0.2 of the
 // noise's own share of it, 1.5 relative variances of ε and a skewness (TestLogarithmicForm).
 
 // leastSignal is the least ratio of a reading to its standard uncertainty.
@@ -97,10 +97,25 @@ func (w *Work) lift(y, dy []float64, β float64) {
 	}
 }
 
-// logReading takes the reading that load has checked: logSignal (for lines without the
+// strong reports whether what every reading has of the surface exceeds leastSignal standard
+// uncertainties, so that its logarithm may be taken for Gaussian.
+func (w *Work) strong() bool {
+	for j, s := range w.signal {
+		net := s
+		if w.sighted {
+			net -= w.seen.b[j] + w.seen.c[j]
+		}
+		if !(net > 0) || w.censored[j] != 0 || !(w.variance(j, s)*leastSignal*leastSignal <= net*net*(1+1e-9)) {
+			return false
+		}
+	}
+	return true
+}
+
+// logReading takes a strong reading that load has checked: logSignal (for lines without the
 // constant of Planck's law), variance of ln(s − b − c), and the shared unknowns' relative
-// effects at 1/T = β. It refuses nets below leastSignal standard uncertainties.
-func (w *Work) logReading(β float64) error {
+// effects at 1/T = β.
+func (w *Work) logReading(β float64) {
 	e, p := w.e, w.process
 	for j, s := range w.signal {
 		net, a := s, 1.0
@@ -108,11 +123,7 @@ func (w *Work) logReading(β float64) error {
 			net -= w.seen.b[j] + w.seen.c[j]
 			a = w.seen.a[j]
 		}
-		v := w.variance(j, s) / (net * net)
-		if !(net > 0) || w.censored[j] != 0 || !(v*leastSignal*leastSignal <= 1+1e-9) {
-			return &WeakError{e.used[j], net, math.Sqrt(w.variance(j, s))}
-		}
-		p.variance[j] = v
+		p.variance[j] = w.variance(j, s) / (net * net)
 		p.logNet[j] = net
 		p.logSignal[j] = net / a
 	}
@@ -125,14 +136,13 @@ func (w *Work) logReading(β float64) error {
 	}
 	p.reflecting = false
 	if !w.sighted {
-		return nil
+		return
 	}
 	for _, b := range w.seen.b {
 		p.reflecting = p.reflecting || b > 0
 	}
 	p.reflecting = p.reflecting || w.seen.self > 0
 	w.relativeEffects(β)
-	return nil
 }
 
 // relativeEffects fills R, ∂ ln(s − b − c)/∂η, at 1/T = β.

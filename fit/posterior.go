@@ -22,9 +22,11 @@ type processWork struct {
 	plan *processPlan
 
 	logSignal, variance []float64
-	logNet              []float64 // ln of what a reading has of the surface
-	reflecting          bool      // the surface reflects something, or sees itself
-	shared              []float64 // R, n×q
+	logNet              []float64   // ln of what a reading has of the surface
+	reflecting          bool        // the surface reflects something, or sees itself
+	linear              *linearWork // in use where the reading is too weak for logarithms
+	forceLinear         bool        // a test asks for it
+	shared              []float64   // R, n×q
 	boltzmann, rest     []float64
 	y, dy, limit        []float64
 	inverse             []float64   // 1/√(variance + least diagonal)

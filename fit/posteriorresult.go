@@ -68,6 +68,16 @@ func (p *processWork) panelOf(β float64) (*panel, float64) {
 // surface is of that kind.
 func (w *Work) leastMisfit(β float64) float64 {
 	p := w.process
+	if p.linear != nil && p.linear.on {
+		w.linearAtBeta(β)
+		best := 0
+		for c, v := range p.density {
+			if v > p.density[best] {
+				best = c
+			}
+		}
+		return max(0, p.linear.misfit[best])
+	}
 	q, z := p.panelOf(β)
 	w.posteriorAt(q, z)
 	best := 0
@@ -86,9 +96,15 @@ func (e *Estimator) diagnosePosterior(dst *Result, w *Work) error {
 		return err
 	}
 	o := dst.posterior
-	w.fillComponentShares(o)
-	w.fillEmissivity(o)
-	o.exact = w.exactCurveStd(o.beta)
+	if l := w.process.linear; l != nil && l.on {
+		w.linearShares(o)
+		w.linearEmissivity(o)
+		o.exact = -1
+	} else {
+		w.fillComponentShares(o)
+		w.fillEmissivity(o)
+		o.exact = w.exactCurveStd(o.beta)
+	}
 	o.described = true
 	if dst.contradicted() {
 		dst.note("the readings contradict the assumptions (%v, %v): χ² = %.3g for %d channels; the interval holds only if they are right", e.assume.Emissivity, e.assume.Noise, dst.chi2, e.n)

@@ -498,17 +498,3 @@ func (w *WideError) Error() string {
 
 // Unwrap returns ErrAssume.
 func (w *WideError) Unwrap() error { return ErrAssume }
-
-// WeakError names a reading too weak beside its standard uncertainty for the logarithmic
-// form that a process is fitted in. It wraps ErrReadings.
-type WeakError struct {
-	Channel     int
-	Signal, Std float64
-}
-
-func (w *WeakError) Error() string {
-	return fmt.Sprintf("fit: readings: channel %d: signal %g with a standard uncertainty of %g: a surface of unknown emissivity needs readings of %d times theirs or more; mask the channel, or average readings", w.Channel, w.Signal, w.Std, leastSignal)
-}
-
-// Unwrap returns ErrReadings.
-func (w *WeakError) Unwrap() error { return ErrReadings }

@@ -17,7 +17,7 @@ type posterior struct {
 	beta, betaU float64   // of β: median and standard deviation
 	shares      []float64 // of the components
 	value, unc  []float64 // emissivity of the channels used, and its standard uncertainty
-	exact       float64   // standard uncertainty of T, K, if the curve is exactly the mean
+	exact       float64   // standard uncertainty of T, K, if the curve is exactly the mean; −1: not known
 	described   bool
 }
 
@@ -31,6 +31,12 @@ const quadratureTolerance = 1e-5
 // estimatePosterior fills dst with the posterior of the reading that load has taken.
 func (w *Work) estimatePosterior(dst *Result) error {
 	e := w.e
+	if l := w.process.linear; l != nil {
+		l.on = false
+	}
+	if w.process.forceLinear || !w.strong() {
+		return w.linearPosterior(dst)
+	}
 	// What is shared acts on ln(s − b − c) by an amount that depends on T a little: it is taken
 	// at the median of a first estimate.
 	if err := w.posteriorOnce(dst, math.Sqrt(e.hottest*e.coldest)); err != nil || e.q == 0 || e.steady {
@@ -42,9 +48,7 @@ func (w *Work) estimatePosterior(dst *Result) error {
 // posteriorOnce is estimatePosterior with the shared unknowns' effects at 1/T = β.
 func (w *Work) posteriorOnce(dst *Result, β float64) error {
 	e, p := w.e, w.process
-	if err := w.logReading(β); err != nil {
-		return err
-	}
+	w.logReading(β)
 	if err := w.factorise(); err != nil {
 		return err
 	}

@@ -63,6 +63,7 @@ type Process struct {
 	components []Component
 	curve      pyro.Spectrum
 	known      []Known
+	references []reference
 	relative   bool
 	wide       bool
 	err        error
@@ -296,8 +297,8 @@ func (p Process) String() string {
 	if p.relative {
 		b.WriteString(" of relative level")
 	}
-	for _, k := range p.known {
-		fmt.Fprintf(&b, ", ε %.3g ± %.2g at %v", k.Value, k.Std, k.Wavelength)
+	for _, words := range p.knownWords() {
+		b.WriteString(", " + words)
 	}
 	return b.String()
 }

@@ -38,6 +38,8 @@ type Assume struct {
 	Masks []Mask
 	// Probability of the intervals. Zero: 0.95.
 	Probability float64
+
+	leave int // 1 + the index of a channel that is left out beside the masks; 0: none
 }
 
 // Range is an interval of temperature, both ends included.

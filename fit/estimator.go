@@ -75,7 +75,7 @@ func New(bands []*pyro.Band, a Assume) (*Estimator, error) {
 		if err := b.Check(e.assume.Range.Min); err != nil {
 			return nil, fmt.Errorf("%w: band %d: %w", ErrAssume, i, err)
 		}
-		if !masked(b, a.Masks) {
+		if !masked(b, a.Masks) && i != a.leave-1 {
 			e.used = append(e.used, i)
 		}
 	}

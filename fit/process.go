@@ -146,10 +146,9 @@ func conditioned(s emissivity.Process, c int, λ []pyro.Wavelength) (channelPrio
 		}
 		rest.SetVec(a, math.Log(d.Value)-mean)
 		for b := range a + 1 {
-			v := s.Covariance(c, d.Wavelength, known[b].Wavelength)
+			v := s.Covariance(c, d.Wavelength, known[b].Wavelength) + s.KnownCovariance(a, b)
 			if a == b {
-				u := d.Std / d.Value
-				v += u*u + k.Roughness*k.Roughness
+				v += k.Roughness * k.Roughness
 			}
 			inner.SetSym(a, b, v)
 		}

@@ -12,6 +12,7 @@ import (
 type posterior struct {
 	grid        []interval // of the density of β, hottest first
 	total       float64
+	offset      float64 // ln of what the density was divided by
 	median      float64 // of T, K, as are mean and std
 	mean, std   float64
 	beta, betaU float64   // of β: median and standard deviation
@@ -216,7 +217,7 @@ func (dst *Result) takePosterior(w *Work) error {
 	o := dst.posterior
 	o.grid = append(o.grid[:0], p.grid...)
 	o.described = false
-	o.total = 0
+	o.total, o.offset = 0, p.offset
 	var t1, t2, b1, b2 float64
 	reference := 0.0
 	for i := range o.grid {

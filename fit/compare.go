@@ -91,8 +91,9 @@ var ErrCompare = errors.New("fit: compare")
 
 // Compare estimates the same readings under each of the surfaces, the other assumptions (those
 // of a but for its Emissivity) being the same, and says how well each describes them. Weights
-// rest on the evidence where every surface that can be estimated has one, else on AICc, else on
-// the leave-one-out score. It is an error where not one can be estimated.
+// rest on the evidence where every surface that can be estimated has one, or where a process is
+// among them (a family without priors then has no weight: a process is cautious on purpose, and
+// every other score counts that against it); else on AICc, else on the leave-one-out score. It is an error where not one can be estimated.
 //
 // None of these measures is one of the temperature's error: a curve that is free to follow the
 // readings follows them at wrong temperatures too.
@@ -193,25 +194,33 @@ func (row *Compared) merit(m Measure) (float64, bool) {
 
 // weigh picks the measure and fills the weights.
 func (c *Comparison) weigh() {
+	cautious := false // a process is among them
+	for i := range c.Surfaces {
+		row := &c.Surfaces[i]
+		cautious = cautious || row.Err == nil && row.Result.posterior != nil
+	}
 	for _, m := range []Measure{ByEvidence, ByAICc, ByLeaveOneOut} {
 		all, most := true, math.Inf(-1)
 		for i := range c.Surfaces {
 			if row := &c.Surfaces[i]; row.Err == nil {
-				v, ok := row.merit(m)
-				all = all && ok
-				most = max(most, v)
+				if v, ok := row.merit(m); ok {
+					most = max(most, v)
+				} else {
+					all = false
+				}
 			}
 		}
-		if !all {
+		if !all && !(m == ByEvidence && cautious) || math.IsInf(most, -1) {
 			continue
 		}
 		c.Measure = m
 		total := 0.0
 		for i := range c.Surfaces {
 			if row := &c.Surfaces[i]; row.Err == nil {
-				v, _ := row.merit(m)
-				row.Weight = math.Exp(v - most)
-				total += row.Weight
+				if v, ok := row.merit(m); ok {
+					row.Weight = math.Exp(v - most)
+					total += row.Weight
+				}
 			}
 		}
 		for i := range c.Surfaces {
@@ -372,12 +381,16 @@ func (c *Comparison) Verdict() string {
 	case best == nil:
 		return "The surfaces have no measure in common by which the readings could tell them apart" + end
 	}
-	var same, other []string
+	var same, other, without []string
 	low, high := math.Inf(1), math.Inf(-1)
 	gap := math.Inf(1)
 	for i := range c.Surfaces {
 		row := &c.Surfaces[i]
 		if row.Err != nil {
+			continue
+		}
+		if _, ok := row.merit(c.Measure); !ok {
+			without = append(without, row.Name)
 			continue
 		}
 		if row != best && c.apart(best, row) {
@@ -392,9 +405,15 @@ func (c *Comparison) Verdict() string {
 			low, high = min(low, t), max(high, t)
 		}
 	}
+	if len(without) > 0 {
+		end += fmt.Sprintf(" Beside them %s can't be weighed, for want of priors; what the readings say against a family is its χ².", listed(without))
+	}
 	by := fmt.Sprintf("by the %v", c.Measure)
 	if c.Measure == ByAICc {
 		by = "by AICc"
+	}
+	if len(same) == 1 && len(other) == 0 {
+		return fmt.Sprintf("%s alone has the measure to be weighed by (%s)%s", same[0], by, end)
 	}
 	if len(same) == 1 {
 		return fmt.Sprintf("The readings tell the surfaces apart: %s describes them better than %s (%s, with %.3g in the ln of a likelihood, where %d are odds of twenty to one)%s", same[0], listed(other), by, gap, decisive, end)
@@ -461,7 +480,9 @@ func (c *Comparison) String() string {
 		}
 		weight := "–"
 		if c.Measure != ByNothing {
-			weight = fmt.Sprintf("%.3f", row.Weight)
+			if weight = "–"; row.Weight > 0 {
+				weight = fmt.Sprintf("%.3f", row.Weight)
+			}
 		}
 		fmt.Fprintf(t, "%s\t%s\t%s\t%.4g (%d)%s\t%s\t%s\t%s\t%s\t%s\n", row.Name, T, interval, row.ChiSquared, row.Freedom, mark,
 			show(row, "AICc", row.AICc), show(row, "BIC", row.BIC), show(row, "evidence", row.LogEvidence), show(row, "leave-one-out", row.LeaveOneOut), weight)

@@ -114,7 +114,7 @@ func (e *Estimator) logPrior() (float64, error) {
 	var chol mat.Cholesky
 	mean, cov := mat.NewVecDense(k, nil), mat.NewSymDense(k, nil)
 	if len(e.data) < k || !chol.Factorize(precision) || chol.Cond() > 1e14 || chol.SolveVecTo(mean, right) != nil || chol.InverseTo(cov) != nil {
-		return 0, fmt.Errorf("%w: not every parameter of %v has a prior (WithPrior, or KnownAt at as many wavelengths)", ErrEvidence, e.assume.Emissivity)
+		return 0, fmt.Errorf("%w: not every parameter has a prior (WithPrior, or KnownAt at as many wavelengths)", ErrEvidence)
 	}
 	misfit := squares - mat.Dot(right, mean) // of the data among themselves
 	θ := append([]float64(nil), e.value...)

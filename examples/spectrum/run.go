@@ -22,6 +22,7 @@ var demo string
 type job struct {
 	in, surface, unit, plot string
 	json, acceptWide        bool
+	compare                 bool
 }
 
 // run does the job and returns how many spectra could not be estimated.
@@ -79,6 +80,14 @@ func run(j job, stdin io.Reader, stdout io.Writer, progress *show.Progress) (fai
 			err = writeJSON(out, e)
 		} else {
 			err = writeText(out, e, unit)
+		}
+		if err == nil && j.compare {
+			var c *fit.Comparison
+			if c, err = cache.compare(e); err == nil && j.json {
+				err = writeComparisonJSON(out, s.ID, c)
+			} else if err == nil {
+				err = writeComparison(out, c)
+			}
 		}
 		if err == nil && !drawn {
 			drawn = true

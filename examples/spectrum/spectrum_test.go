@@ -29,6 +29,8 @@ func TestOutput(t *testing.T) {
 		{"the same as JSON", "bad.json", job{in: "-", surface: "powerlaw", unit: "K", json: true}, badTable, 3},
 		{"demo, a surface that nobody characterised", "unknown.txt", job{surface: "unknown", unit: "C"}, "", 0},
 		{"demo, of any kind, as JSON", "any.json", job{surface: "any", unit: "K", json: true}, "", 0},
+		{"demo, several surfaces", "compare.txt", job{surface: "linear", unit: "K", compare: true}, "", 0},
+		{"the same as JSON", "compare.json", job{surface: "linear", unit: "K", compare: true, json: true}, "", 0},
 		{"too few bands for it", "few.txt", job{in: "-", surface: "unknown", unit: "K"}, fewBands, 2},
 		{"taken all the same, as JSON", "accepted.json", job{in: "-", surface: "unknown", unit: "K", json: true, acceptWide: true}, fewBands, 0},
 		{"few bands of a named kind", "carbon.txt", job{in: "-", surface: "carbon", unit: "K"}, fewBands, 0},

@@ -13,6 +13,11 @@
 // Every known number in it is an input with a standard uncertainty (packages detector and
 // sightline describe them); what the readings share is one unknown η with a prior.
 //
+// A surface of few parameters, a family or a model of package emissivity, gets a profile
+// interval. A surface that nobody characterised is a process, a random curve: there the
+// engine integrates over the curve, and what comes out is the posterior of T, flat over the
+// range beforehand.
+//
 // # Symbols
 //
 //	s   reading, W m⁻² sr⁻¹ m⁻¹ (or any one unit, where the level is declared relative)

@@ -235,7 +235,9 @@ func TestReadingsThatCannotTell(t *testing.T) {
 func TestCompareMixed(t *testing.T) {
 	rng := rand.New(rand.NewPCG(12, 3))
 	bands := lines(t, 0.7, 1.5, 10)
-	r := drawReadings(rng, bands, func(λ pyro.Wavelength) float64 { return 0.5 - 0.3*(λ.Micrometres()-1.1) + 0.3*math.Pow(λ.Micrometres()-1.1, 2) }, 1400, 0.003)
+	r := drawReadings(rng, bands, func(λ pyro.Wavelength) float64 {
+		return 0.5 - 0.3*(λ.Micrometres()-1.1) + 0.3*math.Pow(λ.Micrometres()-1.1, 2)
+	}, 1400, 0.003)
 	c := compare(t, bands, fit.Assume{}, r, emissivity.Grey(), emissivity.Polynomial(1), emissivity.Unknown())
 	if c.Measure != fit.ByLeaveOneOut || c.Surfaces[0].Weight > 0.01 || !strings.Contains(c.Verdict(), "better than grey emissivity") && !strings.Contains(c.Verdict(), "speak against grey emissivity") {
 		t.Errorf("%v\n%v", c.Measure, c)

@@ -338,8 +338,8 @@ func (l *learner) best() [3]float64 {
 	})
 	top, log := list[0].φ, math.Inf(-1)
 	for _, s := range list[:starts] {
-		φ, v := l.maximise(s.φ, 0, 1, 2)
-		if φ, v = l.maximise(φ, 0, 1, 2); v > log { // a second simplex, where the first has collapsed
+		φ, _ := l.maximise(s.φ, 0, 1, 2)
+		if φ, v := l.maximise(φ, 0, 1, 2); v > log { // a second simplex, where the first has collapsed
 			top, log = φ, v
 		}
 	}

@@ -246,7 +246,8 @@ const leastShare = 1e-3
 //
 //	T = Σ wT_i,  u² = Σ w u_i² + Σ w (T_i − T)²
 //
-// and the central interval of the mixture of normals of which these are the moments. ok is false
+// and the central interval of the mixture of normals of which these are the moments. A surface
+// that the readings contradict enters with its discrepancy, where one was found. ok is false
 // where there are no weights, or where a surface of some weight (a thousandth) doesn't determine
 // the temperature.
 func (c *Comparison) Average() (a Averaged, ok bool) {
@@ -301,16 +302,24 @@ func (c *Comparison) Average() (a Averaged, ok bool) {
 	return a, true
 }
 
-// centre returns a temperature and a standard uncertainty: the result's, or those of its interval.
+// centre returns a temperature and a standard uncertainty: the result's, with its discrepancy
+// where it has one, or those of the interval.
 func (row *Compared) centre() (t, u float64, ok bool) {
 	T, state := row.Result.Temperature()
 	if state != Determined {
 		return 0, 0, false
 	}
-	if u, ok := row.Result.Uncertainty(); ok && u > 0 {
+	u, has := row.Result.Uncertainty()
+	iv, _ := row.Result.Interval()
+	if d, ok := row.Result.Discrepancy(); ok {
+		if d.Interval.LowOpen || d.Interval.HighOpen {
+			return 0, 0, false
+		}
+		T, u, has, iv = d.Temperature, d.StdK, d.StdK > 0, d.Interval
+	}
+	if has && u > 0 {
 		return float64(T), u, true
 	}
-	iv, _ := row.Result.Interval()
 	u = float64(iv.High-iv.Low) / 2 / distuv.UnitNormal.Quantile((1+iv.Probability)/2)
 	return float64(iv.Low+iv.High) / 2, u, u > 0
 }
@@ -499,7 +508,7 @@ func (c *Comparison) String() string {
 	b.WriteString("A smaller χ² is not a smaller error of the temperature: a curve that is free to follow the readings follows them at wrong temperatures too.\n")
 	for i := range c.Surfaces {
 		if row := &c.Surfaces[i]; row.Err == nil && row.Result.contradicted() {
-			b.WriteString("* contradicted by the readings: the probability of a larger χ² is below 0.001, and the interval holds only if the surface is right.\n")
+			b.WriteString("* contradicted by the readings: the probability of a larger χ² is below 0.001, and the interval holds only if the surface is right; averaged with its discrepancy, where one was found.\n")
 			break
 		}
 	}

@@ -15,7 +15,7 @@ func (e *Estimator) DiagnoseTo(dst *Result, w *Work, r Readings) error {
 	if err := w.load(r); err != nil {
 		return err
 	}
-	dst.notes = dst.notes[:0]
+	dst.notes, dst.discrepancy = dst.notes[:0], nil
 	if e.process != nil {
 		return e.diagnosePosterior(dst, w)
 	}
@@ -45,6 +45,9 @@ func (e *Estimator) DiagnoseTo(dst *Result, w *Work, r Readings) error {
 	dst.noteSight(w)
 	dst.noteLackOfFit()
 	dst.noteStructure()
+	if dst.contradicted() {
+		dst.carryDiscrepancy(w, r)
+	}
 	return nil
 }
 

@@ -48,6 +48,9 @@ func (w *Work) logEvidence(res *Result) (float64, error) {
 			return 0, fmt.Errorf("%w: a relative level has no prior", ErrEvidence)
 		}
 		v := math.Log(o.total) + o.offset - float64(e.n)/2*math.Log(2*math.Pi) - e.logTemperatureSpan()
+		if l := w.process.linear; l != nil && l.on { // there they are those of s itself
+			return v, nil
+		}
 		for _, net := range w.process.logNet { // the densities are those of ln s
 			v -= net
 		}

@@ -257,3 +257,32 @@ func TestLinearFormOfHotWallsAndSaturation(t *testing.T) {
 		t.Errorf("of noise alone: %v", res)
 	}
 }
+
+// TestEvidenceOfBothForms: on strong readings both forms give the same evidence.
+func TestEvidenceOfBothForms(t *testing.T) {
+	bands, _ := testBands(t, 0.8, 1.4, 0, 5)
+	e, err := New(bands, Assume{Emissivity: emissivity.Unknown(), Range: Range{700, 3000}})
+	if err != nil {
+		t.Fatal(err)
+	}
+	r := Readings{Signal: make([]float64, len(bands)), Std: make([]float64, len(bands))}
+	for j, b := range bands {
+		r.Signal[j] = 0.5 * b.Radiance(1500) * (1 + 0.004*float64(j%2))
+		r.Std[j] = 0.01 * r.Signal[j]
+	}
+	var log [2]float64
+	for k, linear := range []bool{false, true} {
+		w, res := e.NewWork(), e.NewResult()
+		w.process.forceLinear = linear
+		if err := e.EstimateTo(res, w, r); err != nil {
+			t.Fatal(err)
+		}
+		if log[k], err = w.logEvidence(res); err != nil {
+			t.Fatal(err)
+		}
+	}
+	if math.Abs(log[0]-log[1]) > 0.02 {
+		t.Errorf("ln evidence %.4f in the logarithmic form, %.4f in the linear one", log[0], log[1])
+	}
+	t.Logf("%.4f and %.4f", log[0], log[1])
+}

@@ -102,6 +102,9 @@ func (r *Result) String() string {
 		}
 		s += "; " + part + " of u² is the emissivity assumption"
 	}
+	if d := r.discrepancy; d != nil {
+		s += fmt.Sprintf(" (with a smooth misfit of %.2g %% carried: %s)", 100*d.Std, d.words())
+	}
 	if state == Determined && hasU {
 		middle := r.e.used[len(r.e.used)/2]
 		if ε, std, hasStd, ok := r.Emissivity(middle); ok && hasStd {
@@ -236,6 +239,8 @@ func (r *Result) MarshalJSON() ([]byte, error) {
 		AmplStd     []float64  `json:"amplitude_std,omitempty"`
 		ChiSquared  number     `json:"chi_squared,omitempty"`
 		Freedom     *int       `json:"degrees_of_freedom,omitempty"`
+		Misfit      number     `json:"smooth_misfit,omitempty"`
+		MisfitEnds  *[2]number `json:"smooth_misfit_interval_K,omitempty"`
 		Model       string     `json:"model"`
 		Notes       []string   `json:"notes,omitempty"`
 	}{State: r.State().String(), Model: r.e.assume.Emissivity.String(), Notes: r.Notes()}
@@ -277,6 +282,15 @@ func (r *Result) MarshalJSON() ([]byte, error) {
 	}
 	if r.fitted {
 		out.ChiSquared, out.Freedom = num(r.shownChi2()), &r.dof
+	}
+	if d := r.discrepancy; d != nil {
+		out.Misfit, out.MisfitEnds = num(d.Std), &[2]number{}
+		if !d.Interval.LowOpen {
+			out.MisfitEnds[0] = num(float64(d.Interval.Low))
+		}
+		if !d.Interval.HighOpen {
+			out.MisfitEnds[1] = num(float64(d.Interval.High))
+		}
 	}
 	return json.Marshal(out)
 }

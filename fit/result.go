@@ -50,7 +50,8 @@ type Result struct {
 	share, effect []float64
 	notes         []string
 
-	posterior *posterior // of a process; or nil
+	posterior   *posterior   // of a process; or nil
+	discrepancy *Discrepancy // of a family that the readings contradict; or nil
 }
 
 // NewResult returns a result for the estimator to write to.
@@ -70,6 +71,7 @@ func (r *Result) reset(e *Estimator) {
 	r.basins, r.notes = r.basins[:0], r.notes[:0]
 	r.hasCov, r.fitted, r.described, r.hasInterval = false, false, false, false
 	r.hot, r.cold = end{}, end{}
+	r.discrepancy = nil
 	r.limit = math.Inf(-1)
 	clear(r.share)
 	clear(r.effect)

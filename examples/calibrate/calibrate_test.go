@@ -8,8 +8,7 @@ import (
 	"strings"
 	"testing"
 
-	"github.com/google/go-cmp/cmp"
-
+	"candent/examples/internal/golden"
 	"candent/examples/internal/show"
 )
 
@@ -67,19 +66,7 @@ func TestOutput(t *testing.T) {
 			t.Errorf("%s: %d failed, error %v; want %d", c.name, failed, err, c.failed)
 		}
 		got := strings.ReplaceAll(out.String(), dir+string(filepath.Separator), "")
-		if dir := os.Getenv("CANDENT_SHOW"); dir != "" {
-			if err := os.WriteFile(filepath.Join(dir, c.golden), []byte(got), 0o644); err != nil {
-				t.Fatal(err)
-			}
-		}
-		want, err := os.ReadFile(filepath.Join("testdata", c.golden))
-		if err != nil {
-			t.Error(err)
-			continue
-		}
-		if d := cmp.Diff(string(want), got); d != "" {
-			t.Errorf("%s (-want +got):\n%s", c.name, d)
-		}
+		golden.Check(t, c.name, c.golden, []byte(got))
 		for _, line := range strings.Split(strings.TrimSpace(got), "\n") {
 			if c.job.json && !json.Valid([]byte(line)) {
 				t.Errorf("%s: not JSON: %s", c.name, line)

@@ -9,9 +9,8 @@ import (
 	"strings"
 	"testing"
 
-	"github.com/google/go-cmp/cmp"
-
 	"candent/emissivity"
+	"candent/examples/internal/golden"
 	"candent/examples/internal/show"
 )
 
@@ -41,19 +40,7 @@ func TestOutput(t *testing.T) {
 		if err != nil || failed != c.failed {
 			t.Errorf("%s: %d failed, error %v; want %d", c.name, failed, err, c.failed)
 		}
-		if dir := os.Getenv("CANDENT_SHOW"); dir != "" {
-			if err := os.WriteFile(filepath.Join(dir, c.golden), out.Bytes(), 0o644); err != nil {
-				t.Fatal(err)
-			}
-		}
-		want, err := os.ReadFile(filepath.Join("testdata", c.golden))
-		if err != nil {
-			t.Error(err)
-			continue
-		}
-		if d := cmp.Diff(string(want), out.String()); d != "" {
-			t.Errorf("%s (-want +got):\n%s", c.name, d)
-		}
+		golden.Check(t, c.name, c.golden, out.Bytes())
 		for _, line := range strings.Split(strings.TrimSpace(out.String()), "\n") {
 			if c.job.json && !json.Valid([]byte(line)) {
 				t.Errorf("%s: not JSON: %s", c.name, line)

@@ -2,13 +2,10 @@ package main
 
 import (
 	"bytes"
+	"candent/examples/internal/golden"
 	"encoding/json"
-	"os"
-	"path/filepath"
 	"strings"
 	"testing"
-
-	"github.com/google/go-cmp/cmp"
 )
 
 func demoJob() job {
@@ -38,19 +35,7 @@ func TestOutput(t *testing.T) {
 		if err != nil || failed != c.failed {
 			t.Errorf("%s: %d failed, error %v; want %d", c.golden, failed, err, c.failed)
 		}
-		if dir := os.Getenv("CANDENT_SHOW"); dir != "" {
-			if err := os.WriteFile(filepath.Join(dir, c.golden), out.Bytes(), 0o644); err != nil {
-				t.Fatal(err)
-			}
-		}
-		want, err := os.ReadFile(filepath.Join("testdata", c.golden))
-		if err != nil {
-			t.Error(err)
-			continue
-		}
-		if d := cmp.Diff(string(want), out.String()); d != "" {
-			t.Errorf("%s (-want +got):\n%s", c.golden, d)
-		}
+		golden.Check(t, c.golden, c.golden, out.Bytes())
 		for _, line := range strings.Split(strings.TrimSpace(out.String()), "\n") {
 			if c.job.json && !json.Valid([]byte(line)) {
 				t.Errorf("%s: not JSON: %s", c.golden, line)

@@ -4,6 +4,7 @@ import (
 	"math"
 
 	"candent/emissivity"
+	"candent/fit/internal/elementary"
 )
 
 // eliminateSteps bounds the Gauss–Newton steps at one temperature.
@@ -328,7 +329,7 @@ func (w *Work) startTheta(β float64, ψ []float64) {
 	clear(w.hess)
 	clear(w.grad)
 	if !w.haveLog && !w.sighted {
-		logTo(w.log, w.signal)
+		elementary.LogTo(w.log, w.signal)
 		w.haveLog = true
 	}
 	for j, y := range w.log {

@@ -5,6 +5,7 @@ import (
 	"slices"
 
 	"candent/emissivity"
+	"candent/fit/internal/elementary"
 )
 
 // The fast path: where the assumptions are plain and every channel stands well above its
@@ -111,7 +112,7 @@ func (w *Work) grouped() bool {
 	g := w.groups[:f.groups]
 	clear(g)
 	if !w.haveLog {
-		logTo(w.log, w.signal)
+		elementary.LogTo(w.log, w.signal)
 		w.haveLog = true
 	}
 	least := math.Inf(1)
@@ -152,7 +153,7 @@ func (w *Work) addPlanck(β float64) bool {
 			return false
 		}
 	}
-	expTo(term, term)
+	elementary.ExpTo(term, term)
 	for i := range groups {
 		p := &groups[i]
 		x := term[i] // ln(1 − x) by its series, x below 0.05
@@ -241,7 +242,7 @@ func (w *Work) profilePlain(t float64) point {
 	for g := range groups {
 		jac[g] = 1 + t*groups[g].x
 	}
-	logTo(rest, jac)
+	elementary.LogTo(rest, jac)
 	var s, k, r, j float64
 	for g := range groups {
 		p := &groups[g]

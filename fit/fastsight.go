@@ -1,6 +1,10 @@
 package fit
 
-import "math"
+import (
+	"math"
+
+	"candent/fit/internal/elementary"
+)
 
 // The fast path behind a sight: what the readings say of the surface is E = (s − b − c)/(aS − b),
 // so
@@ -66,7 +70,7 @@ func (w *Work) groupedSight() bool {
 				lifted[j] /= lift
 			}
 		}
-		logTo(lifted, lifted)
+		elementary.LogTo(lifted, lifted)
 		for j, weight := range weights {
 			p := &g[f.of[j]]
 			p.weight += weight
@@ -187,7 +191,7 @@ func (w *Work) profileSight(t float64) point {
 	for g := range groups {
 		jac[g] = 1 + t*groups[g].x
 	}
-	logTo(rest, jac)
+	elementary.LogTo(rest, jac)
 	for g := range groups {
 		jac[g] = groups[g].x / jac[g]
 		rest[g] = groups[g].y - rest[g]

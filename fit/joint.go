@@ -4,6 +4,7 @@ import (
 	"math"
 
 	"candent/emissivity"
+	"candent/fit/internal/elementary"
 )
 
 // The joint system of β, level and slope in unrolled form: what evaluate does for any
@@ -33,7 +34,7 @@ func (w *Work) describe(β, θ0, θ1 float64) (d []float64) {
 		for j := range black {
 			g[j] = θ0 + θ1*d[j]
 		}
-		expTo(g, g)
+		elementary.ExpTo(g, g)
 		for j, s := range black {
 			m := s * g[j]
 			model[j], g[j], v[j] = m, m, rate[j]
@@ -51,7 +52,7 @@ func (w *Work) describe(β, θ0, θ1 float64) (d []float64) {
 		d[j] = μ[j] + θ1*q.v + h*q.s
 		v[j] = rate[j] + θ1*dμ[j] + h*q.dv + c*q.ds
 	}
-	expTo(g, g)
+	elementary.ExpTo(g, g)
 	for j, s := range black {
 		g[j] *= s
 		model[j] = g[j]
@@ -108,7 +109,7 @@ func (w *Work) jointLines(β, θ0, θ1 float64) {
 	for j, k := range rates {
 		black[j] = -k * β
 	}
-	expTo(black, black)
+	elementary.ExpTo(black, black)
 	var g0, g1, g2, h00, h01, h02, h11, h12, h22, n00, n01, n02, cost float64
 	coord, peak := e.coord[:len(rates)], e.peak[:len(rates)]
 	signal, inverse, model := w.signal[:len(rates)], w.inverse[:len(rates)], w.model[:len(rates)]

@@ -1,6 +1,10 @@
 package fit
 
-import "math"
+import (
+	"math"
+
+	"candent/fit/internal/elementary"
+)
 
 // The joint between a reading and a process: at one temperature, what the emissivities
 // would have to be, and, once per reading, how uncertain the readings leave their logarithms.
@@ -32,14 +36,14 @@ func (w *Work) logRatio(y, dy []float64, β float64) {
 		for j, k := range rate {
 			t[j] = -k * β
 		}
-		expTo(t, t)
+		elementary.ExpTo(t, t)
 		for j, v := range t {
 			rest[j] = 1 - v
 			if v > 0.5 {
 				rest[j] = -math.Expm1(-rate[j] * β)
 			}
 		}
-		logTo(t, rest)
+		elementary.LogTo(t, rest)
 		for j, k := range rate {
 			y[j] = p.logSignal[j] + k*β + t[j]
 		}
@@ -127,8 +131,8 @@ func (w *Work) logReading(β float64) {
 		p.logNet[j] = net
 		p.logSignal[j] = net / a
 	}
-	logTo(p.logSignal, p.logSignal)
-	logTo(p.logNet, p.logNet)
+	elementary.LogTo(p.logSignal, p.logSignal)
+	elementary.LogTo(p.logNet, p.logNet)
 	if e.lines {
 		for j, l := range p.plan.logPeak {
 			p.logSignal[j] -= l

@@ -3,6 +3,8 @@ package fit
 import (
 	"fmt"
 	"math"
+
+	"candent/fit/internal/elementary"
 )
 
 // The posterior of 1/T = β for a process: with y(β) the logarithm of the emissivities that
@@ -590,7 +592,7 @@ func (w *Work) posteriorAt(q *panel, z float64) float64 {
 		}
 		p.exponent[c] = v
 	}
-	expTo(p.density, p.exponent)
+	elementary.ExpTo(p.density, p.exponent)
 	sum := 0.0
 	for c, v := range p.density {
 		if β > p.safe {

@@ -6,6 +6,7 @@ import (
 	"gonum.org/v1/gonum/floats"
 
 	"candent/emissivity"
+	"candent/fit/internal/elementary"
 	"candent/pyro/sightline"
 )
 
@@ -96,7 +97,7 @@ func (w *Work) evaluateColumns(β float64, ψ []float64) float64 {
 	}
 	exponential := e.link == emissivity.Exp
 	if exponential {
-		expTo(E, E)
+		elementary.ExpTo(E, E)
 	}
 	factor, a, da, b, c := k.factor[:n], k.a[:n], k.da[:n], k.b[:n], k.c[:n]
 	for j := range factor {

@@ -5,6 +5,7 @@ import (
 	"math"
 
 	"candent/emissivity"
+	"candent/fit/internal/elementary"
 	"candent/fit/internal/lsq"
 )
 
@@ -209,7 +210,7 @@ func (e *Estimator) radiate(β float64, t *bandTable, black, rate, coord []float
 		for j, k := range e.rate {
 			black[j] = -k * β
 		}
-		expTo(black, black)
+		elementary.ExpTo(black, black)
 		for j, y := range black {
 			rest := 1 - y // 1 − e⁻ˣ
 			if y > 0.5 {
@@ -235,7 +236,7 @@ func (e *Estimator) radiate(β float64, t *bandTable, black, rate, coord []float
 			width[j].s, _ = horner((*[tableDegree + 1]float64)(row[3*(tableDegree+1):]), z)
 		}
 	}
-	expTo(black, black)
+	elementary.ExpTo(black, black)
 }
 
 // drift fills the derivatives by β of what radiate found of wide bands' coordinates.

@@ -1,4 +1,4 @@
-package fit
+package elementary
 
 import (
 	"math"
@@ -7,14 +7,14 @@ import (
 )
 
 func TestExpTo(t *testing.T) {
-	const bound = 2.5 // ULP: 2 of expTo's own and half of math.Exp's
+	const bound = 2.5 // ULP: 2 of ExpTo's own and half of math.Exp's
 	rng := rand.New(rand.NewPCG(3, 5))
 	x := []float64{0, 1, -1, 699.9, -699.9, 750, -800, math.Inf(-1), math.Inf(1), math.Ln2 / 128, -1e-300}
 	for range 20000 {
 		x = append(x, 1400*rng.Float64()-700, 2*rng.NormFloat64())
 	}
 	y := make([]float64, len(x))
-	expTo(y, x)
+	ExpTo(y, x)
 	for i, v := range x {
 		want := math.Exp(v)
 		if y[i] == want {
@@ -25,7 +25,7 @@ func TestExpTo(t *testing.T) {
 			t.Fatalf("exp(%g) = %.17g, want %.17g", v, y[i], want)
 		}
 	}
-	expTo(y[:1], []float64{math.NaN()})
+	ExpTo(y[:1], []float64{math.NaN()})
 	if !math.IsNaN(y[0]) {
 		t.Errorf("exp(NaN) = %g", y[0])
 	}
@@ -36,7 +36,7 @@ func TestLogTo(t *testing.T) {
 	for range 20000 {
 		x := []float64{math.Exp(1400*rng.Float64() - 700)}
 		y := make([]float64, 1)
-		logTo(y, x)
+		LogTo(y, x)
 		if !(math.Abs(y[0]-math.Log(x[0])) <= 1e-10) {
 			t.Fatalf("ln(%g) = %.17g, want %.17g", x[0], y[0], math.Log(x[0]))
 		}
@@ -57,9 +57,9 @@ func BenchmarkExp(b *testing.B) {
 			}
 		}
 	})
-	b.Run("expTo", func(b *testing.B) {
+	b.Run("ExpTo", func(b *testing.B) {
 		for b.Loop() {
-			expTo(expSink[:], x[:])
+			ExpTo(expSink[:], x[:])
 		}
 	})
 }

@@ -1,15 +1,17 @@
-package fit
+// Package elementary has exponentials and logarithms of whole slices, without calls in the
+// loop: they are most of what a fit of many channels costs.
+package elementary
 
 import "math"
 
-// expTo writes eˣ to dst for each x, to 2 ULP for |x| < 700; dst may be src. Beyond, it
+// ExpTo writes eˣ to dst for each x, to 2 ULP for |x| < 700; dst may be src. Beyond, it
 // asks math.Exp. A loop without calls costs about half of one that calls math.Exp, and
 // the exponentials are most of what a fit of many channels costs (BenchmarkExp).
 //
 //	eˣ = 2^(k/64) · e^r,   k = round(64x/ln 2),   |r| ≤ ln 2/128
 //
 // with a table of 2^(j/64), and the polynomial of e^r to r⁵/5! (remainder below 4e-17).
-func expTo(dst, src []float64) {
+func ExpTo(dst, src []float64) {
 	const (
 		perLn2 = expSteps / math.Ln2
 		high   = 0x1.62e42fefa0000p-1 / expSteps // ln 2 in two parts, the first exact in k·high
@@ -43,9 +45,9 @@ var expTable = func() (t [expSteps]float64) {
 	return t
 }()
 
-// logTo writes ln x to dst to 1e-10 for positive normal x, which is enough for a start;
+// LogTo writes ln x to dst to 1e-10 for positive normal x, which is enough for a start;
 // for others it writes what comes of their bits.
-func logTo(dst, src []float64) {
+func LogTo(dst, src []float64) {
 	const mask = 1<<52 - 1
 	dst = dst[:len(src)]
 	for i, x := range src {

@@ -63,11 +63,12 @@ func (w *Work) groupedSight() bool {
 		copy(lifted, w.log)
 		if walls && β == β {
 			for j, b := range v.b {
-				lift := 1 - b/(v.a[j]*w.black[j])
-				if lift < liftLeast {
+				own := v.a[j] * w.black[j]
+				lift := own - b
+				if lift < liftLeast*own {
 					return false
 				}
-				lifted[j] /= lift
+				lifted[j] *= own / lift
 			}
 		}
 		elementary.LogTo(lifted, lifted)

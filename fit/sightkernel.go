@@ -20,7 +20,7 @@ type columns struct {
 	jac    [][]float64 // of β, θ, η, each n long, in units of σ
 	diff   []float64   // s − m
 	kinds  []columnKind
-	gain   []float64 // q×n: r of a throughput, which multiplies all that is read by 1 + rη
+	gain   []float64 // q×n: r, by which a changes; a throughput multiplies all that is read by 1 + rη
 	factor []float64 // 1 + Σ rη
 	a, da  []float64 // further relative changes of a by the other columns, and their slope by β
 	b, c   []float64
@@ -70,7 +70,7 @@ func (w *Work) prepareColumns() {
 		return
 	}
 	for col, kind := range k.kinds {
-		if !kind.throughput {
+		if !kind.onA {
 			continue
 		}
 		r := k.gain[col*e.n : (col+1)*e.n]
@@ -119,10 +119,10 @@ func (w *Work) evaluateColumns(β float64, ψ []float64) float64 {
 			continue
 		}
 		if kind.onA {
-			for j := range a {
+			for j, r := range k.gain[col*n : (col+1)*n] {
 				f := &v.effect[j*q+col]
 				t, R := f.c1+f.c2*β, R[j]
-				a[j] += h * (f.a/v.a[j] + β*R*t)
+				a[j] += h * (r + β*R*t)
 				da[j] += h * ((R+β*R*(R+e.rate[j]))*t + β*R*f.c2)
 			}
 		}

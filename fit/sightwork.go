@@ -251,12 +251,15 @@ func (w *Work) addDetectors(mean float64) {
 	e, v := w.e, &w.seen
 	s := e.sight
 	q := e.q
+	last, r := -1, 0.0 // most channels share their inputs
 	relative := func(j, k int) {
 		if k < 0 || s.inputs[k].column < 0 {
 			return
 		}
 		col := s.inputs[k].column
-		r := s.columns[col].std / v.value[k]
+		if k != last {
+			last, r = k, s.columns[col].std/v.value[k]
+		}
 		f := &v.effect[j*q+col]
 		f.a += r * v.a[j]
 		f.b += r * v.b[j]

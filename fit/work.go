@@ -140,11 +140,8 @@ func (w *Work) load(r Readings) error {
 	largest, mean := 0.0, 0.0
 	for j, i := range e.used {
 		s := r.Signal[i]
-		switch {
-		case math.IsNaN(s) || math.IsInf(s, 0):
+		if math.IsNaN(s) || math.IsInf(s, 0) {
 			return &ReadingError{i, "signal", s, "leave the channel out, or give it as a bound"}
-		case s <= 0 && noise.kind == modelled && noise.floor == 0:
-			return &ReadingError{i, "signal", s, "noise that is relative alone gives no zero or negative reading: declare a floor (RelativeWithFloor)"}
 		}
 		var u float64
 		switch {
@@ -166,6 +163,9 @@ func (w *Work) load(r Readings) error {
 				w.shot[j] = 0
 			}
 			mean += s * w.seen.gain[j] / float64(e.n)
+		}
+		if s <= 0 && noise.kind == modelled && noise.floor == 0 && w.rounding[j] == 0 {
+			return &ReadingError{i, "signal", r.Signal[i], "noise that is relative alone gives no zero or negative reading: declare a floor (RelativeWithFloor)"}
 		}
 		w.signal[j], w.std[j] = s, u
 		largest = max(largest, math.Abs(s))

@@ -485,7 +485,11 @@ func newWideError(e *Estimator) error {
 
 func (w *WideError) Error() string {
 	var b strings.Builder
-	fmt.Fprintf(&b, "fit: assumption: %d channels of an %s (ε between %.2g and %.2g at %v): name a kind of surface, a handbook curve (emissivity.About) or an emissivity known at a wavelength (KnownAt), or declare AcceptWide. Kinds:", w.Channels, w.Surface, w.Low, w.High, w.Wavelength)
+	bands := "one band"
+	if w.Channels > 1 {
+		bands = fmt.Sprintf("%d bands", w.Channels)
+	}
+	fmt.Fprintf(&b, "fit: assumption: %s can't tell enough of the surface (%s: ε between %.2g and %.2g at %v): name a kind of surface, a handbook curve (emissivity.About) or an emissivity known at a wavelength (KnownAt), or declare AcceptWide. Kinds:", bands, w.Surface, w.Low, w.High, w.Wavelength)
 	for i, k := range w.Kinds {
 		if i > 0 {
 			b.WriteString(",")

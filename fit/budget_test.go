@@ -110,6 +110,44 @@ func TestAWavelengthErrorActsTwice(t *testing.T) {
 	}
 }
 
+// A rectangular band that is 2 % wider than believed reads what its gain, found at the copper
+// point, doesn't take back.
+func TestAnUncertainWidthActsTwice(t *testing.T) {
+	read := func(half, T float64) float64 {
+		s := scene{T: T, ε: func(float64) float64 { return 1 }}
+		b, err := pyro.Line(0.9 * µm)
+		if err != nil {
+			t.Fatal(err)
+		}
+		return s.read(b, half)
+	}
+	const half = 0.02
+	for _, at := range []pyro.Temperature{0, 1357.77} {
+		band, err := pyro.FlatTop(0.88*µm, 0.92*µm)
+		if err != nil {
+			t.Fatal(err)
+		}
+		y := []float64{read(half, 2000)}
+		width := half * 1e-6 / math.Sqrt(3)
+		r := estimate(t, []*pyro.Band{band}, fit.Assume{Emissivity: emissivity.Grey().Fix("level", 1), Detectors: []detector.Channel{{
+			Width: input("width", width, 0.02*width), CalibratedAt: at}}}, fit.Readings{Signal: y, Std: scaled(y, 1e-4)})
+		got := 0.0
+		for _, s := range r.Budget() {
+			if s.Name == "width" {
+				got = s.EffectK
+			}
+		}
+		change := math.Log(read(half*1.02, 2000) / read(half, 2000))
+		if at > 0 {
+			change -= math.Log(read(half*1.02, float64(at)) / read(half, float64(at)))
+		}
+		slope := (math.Log(read(half, 2001)) - math.Log(read(half, 1999))) / 2
+		want := -change / slope
+		close(t, "effect of the width", got, want, 0.03*math.Abs(want))
+		t.Logf("calibrated at %v: %.4f K, by integration %.4f K", at, got, want)
+	}
+}
+
 // TestTheWorkedFiniteErrors compares with finite errors computed from Planck's law for one
 // wavelength (source: the monochromatic equations solved in double precision, seven digits).
 func TestTheWorkedFiniteErrors(t *testing.T) {

@@ -223,6 +223,7 @@ func withInputs(a Assume, change func(pyro.Input) pyro.Input) Assume {
 		replace(&d.Dark)
 		replace(&d.Gain)
 		replace(&d.Exposure)
+		replace(&d.Width)
 		d.Wavelength = slices.Clone(d.Wavelength)
 		for k := range d.Wavelength {
 			replace(&d.Wavelength[k].Input)

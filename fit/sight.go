@@ -297,11 +297,14 @@ func (e *Estimator) compileDetectors() error {
 			}
 			δ := w.PerUnit * s.columns[k].std
 			t := shift{column: k, c0: -5 * δ / λ, c1: -δ / λ}
-			if c.CalibratedAt > 0 {
-				β := 1 / float64(c.CalibratedAt)
-				t.c0 = -t.c1 * β * lineRate(λ, β)
+			c.shift = append(c.shift, calibrated(t, λ, c.CalibratedAt))
+		}
+		if c.Width != nil {
+			if k := s.inputs[s.register(c.Width, positive, false)].column; k >= 0 {
+				// S = L + σ²L″/2 with λ²L″/L = x² − 12x + 30 in Wien's limit, x = −β·rate = kβ.
+				f := c.Width.Value * s.columns[k].std / (λ * λ)
+				c.shift = append(c.shift, calibrated(shift{column: k, c0: 30 * f, c1: 12 * f, c2: -pyro.C2 / λ * f}, λ, c.CalibratedAt))
 			}
-			c.shift = append(c.shift, t)
 		}
 		if c.Curve != nil {
 			e.compileCurve(&c)
@@ -309,6 +312,15 @@ func (e *Estimator) compileDetectors() error {
 		s.channel[j] = c
 	}
 	return nil
+}
+
+// calibrated takes from a shift what the calibration at a temperature took up; 0 K: nothing.
+func calibrated(t shift, λ float64, at pyro.Temperature) shift {
+	if at > 0 {
+		β := 1 / float64(at)
+		t.c0 = -β * lineRate(λ, β) * (t.c1 + t.c2*β)
+	}
+	return t
 }
 
 // lineRate is d ln L/dβ at one wavelength.

@@ -32,7 +32,11 @@ type Channel struct {
 	// Wavelength lists what the centre of the band is uncertain by. CalibratedAt is the
 	// temperature of the blackbody at which Gain was found: there a shifted band reads right,
 	// since the shift went through the calibration too. 0: the gain is the responsivity's.
-	Wavelength   []WavelengthError
+	Wavelength []WavelengthError
+	// Width is the standard deviation of the responsivity, in metres, where it is uncertain: a
+	// rectangular band's is its full width/√12, a Gaussian's its FWHM/2.3548. Its value must be
+	// that of the band; its uncertainty acts to second order of the width, in Wien's limit.
+	Width        *pyro.Input
 	CalibratedAt pyro.Temperature
 
 	Linearity Response // f; nil: linear
@@ -85,6 +89,14 @@ func (c *Channel) Check() error {
 		}
 		if i != c.Dark && !(i.Value > 0) {
 			return fmt.Errorf("%w: %s = %g must be positive", ErrDetector, i.Name, i.Value)
+		}
+	}
+	if c.Width != nil {
+		if err := c.Width.Check(); err != nil {
+			return fmt.Errorf("%w: %w", ErrDetector, err)
+		}
+		if !(c.Width.Value > 0 && c.Width.Value < 1e-4) {
+			return fmt.Errorf("%w: %s = %g: a width in metres", ErrDetector, c.Width.Name, c.Width.Value)
 		}
 	}
 	for _, w := range c.Wavelength {

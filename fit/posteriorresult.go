@@ -42,6 +42,11 @@ func (e *Estimator) posteriorTo(dst *Result, w *Work) error {
 	dst.hasCov, dst.fitted = true, true
 	dst.limit = math.Inf(1)
 	dst.chi2, dst.dof = w.leastMisfit(o.beta), e.n-1
+	for _, side := range w.censored {
+		if side != 0 {
+			dst.dof-- // a bound leaves nothing to test by
+		}
+	}
 	return nil
 }
 

@@ -1,6 +1,7 @@
 package fit_test
 
 import (
+	"errors"
 	"math"
 	"testing"
 
@@ -50,6 +51,14 @@ func TestPosteriorBehindASight(t *testing.T) {
 	// What is shared matters: without it the interval would be narrower.
 	if math.IsNaN(u3) {
 		t.Error("u is NaN")
+	}
+}
+
+// A spread of the temperature over the field is refused, not passed over.
+func TestAProcessRefusesASpreadTemperature(t *testing.T) {
+	_, err := fit.New(lines(t, 0.9, 1.6, 6), fit.Assume{Emissivity: emissivity.Unknown(), Field: sightline.Field{Spread: input("spread", 20, 5)}})
+	if !errors.Is(err, fit.ErrAssume) {
+		t.Errorf("%v", err)
 	}
 }
 

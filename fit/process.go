@@ -65,6 +65,8 @@ func (e *Estimator) compileProcess() error {
 		return fmt.Errorf("%w: %v with a covariance of the readings: declare what channels share as inputs", ErrAssume, s)
 	case e.assume.Noise.unknown:
 		return fmt.Errorf("%w: %v with noise of unknown size: state the size, since the surface explains any residual", ErrAssume, s)
+	case e.assume.Field.Spread != nil:
+		return fmt.Errorf("%w: %v with a spread of the temperature over the field: take a family or a model, or leave the spread out and say so", ErrAssume, s)
 	case e.assume.Loss.kind != square:
 		return fmt.Errorf("%w: %v with a loss: mask outlying channels", ErrAssume, s)
 	case e.assume.Temperature.Value > 0 && e.assume.Temperature.StdK == 0:

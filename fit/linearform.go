@@ -71,6 +71,9 @@ func (w *Work) linearPosterior(dst *Result) error {
 	for c := range l.x {
 		clear(l.x[c])
 	}
+	if p.plan.surface.IsRelative() && !w.someReading() {
+		return fmt.Errorf("%w: no reading stands %d standard uncertainties above the noise: of a level that is relative nothing explains them at any temperature", ErrReadings, clearlySet)
+	}
 	// A coarse look over the whole range, hottest first.
 	l.points = l.points[:0]
 	ratio := math.Log(e.coldest / e.hottest)
@@ -139,6 +142,22 @@ func (w *Work) linearPosterior(dst *Result) error {
 		}
 	}
 	return dst.takePosterior(w)
+}
+
+// someReading reports whether what one reading has of the surface exceeds clearlySet standard
+// uncertainties. Without one a relative level may be as small as it likes, and the posterior
+// can't be normalised.
+func (w *Work) someReading() bool {
+	for j, s := range w.signal {
+		net := s
+		if w.sighted {
+			net -= w.seen.b[j] + w.seen.c[j]
+		}
+		if w.censored[j] >= 0 && net*net >= clearlySet*clearlySet*w.variance(j, s) {
+			return true
+		}
+	}
+	return false
 }
 
 // linearAtBeta returns the logarithm of the density of β, and fills density with each

@@ -1,6 +1,7 @@
 package fit
 
 import (
+	"errors"
 	"math"
 	"math/rand/v2"
 	"testing"
@@ -255,6 +256,30 @@ func TestLinearFormOfHotWallsAndSaturation(t *testing.T) {
 	}
 	if res.State() == Determined {
 		t.Errorf("of noise alone: %v", res)
+	}
+}
+
+// A relative level explains noise at any temperature by being next to nothing: that is refused.
+func TestARelativeLevelOfNoiseIsRefused(t *testing.T) {
+	bands, _ := testBands(t, 0.9, 1.6, 0, 4)
+	e, err := New(bands, Assume{Emissivity: emissivity.Unknown().Relative()})
+	if err != nil {
+		t.Fatal(err)
+	}
+	std := []float64{1, 1, 1, 1}
+	if _, err := e.Estimate(Readings{Signal: []float64{0.5, -1, 2, 1}, Std: std}); !errors.Is(err, ErrReadings) {
+		t.Errorf("noise alone: %v", err)
+	}
+	y := make([]float64, len(bands))
+	for i, b := range bands {
+		y[i] = 20 * b.Radiance(1400) / bands[3].Radiance(1400)
+	}
+	r, err := e.Estimate(Readings{Signal: y, Std: std})
+	if err != nil {
+		t.Fatal(err)
+	}
+	if iv, _ := r.Interval(); !iv.LowOpen && iv.Low > 1400 || !iv.HighOpen && iv.High < 1400 {
+		t.Errorf("%v", r)
 	}
 }
 

@@ -2,7 +2,6 @@ package fit_test
 
 import (
 	"errors"
-	"math"
 	"testing"
 
 	"candent/emissivity"
@@ -26,11 +25,13 @@ func TestPosteriorBehindASight(t *testing.T) {
 		y[i] = 3 * s.read(b, 0)
 		detectors[i] = detector.Channel{Gain: gain, Wavelength: detector.Axis(axis, nil, b.Mean())}
 	}
+	known := 1.0 // of what is shared, in its standard uncertainties
 	run := func(surface emissivity.Surface) *fit.Result {
+		gain.Std, axis.Std = 0.02*known, 0.5e-9*known
 		return estimate(t, bands, fit.Assume{
 			Emissivity:   surface,
 			Surroundings: sightline.Enclosure(&pyro.Input{Name: "wall", Value: 1200, Std: 10, PerReading: true}),
-			Path:         []sightline.Layer{sightline.Window(input("window", 0.9, 0.01))},
+			Path:         []sightline.Layer{sightline.Window(input("window", 0.9, 0.01*known))},
 			Detectors:    detectors,
 			Range:        fit.Range{Min: 800, Max: 2500},
 		}, fit.Readings{Signal: y, Std: scaled(y, 0.004), Inputs: []float64{1250}})
@@ -48,9 +49,13 @@ func TestPosteriorBehindASight(t *testing.T) {
 		t.Errorf("%v", r)
 	}
 	t.Log(r)
-	// What is shared matters: without it the interval would be narrower.
-	if math.IsNaN(u3) {
-		t.Error("u is NaN")
+	// What is shared matters: without it the given curve's u is smaller, in both ways alike.
+	known = 0
+	_, v1 := determined(t, run(emissivity.Given{Spectrum: curve}))
+	_, v2 := determined(t, run(emissivity.About("the curve", curve, 0)))
+	close(t, "u without what is shared", v2, v1, 0.02*v1)
+	if !(v1 < 0.9*u1) {
+		t.Errorf("u %g K with what is shared, %g K without", u1, v1)
 	}
 }
 
